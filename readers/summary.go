@@ -1,0 +1,245 @@
+package readers
+
+import (
+	"math"
+	"strings"
+)
+
+// summaries gives for each text of a dictionary the word for a sum, mean or the
+// like that it is, nil when none is.
+func (d *dictionary) summaries() []string {
+	var out []string
+	for code := range d.at {
+		if word := summaryName(d.text(uint32(code))); word != "" {
+			if out == nil {
+				out = make([]string, d.len())
+			}
+			out[code] = word
+		}
+	}
+	return out
+}
+
+// summaryName tells what a label says of the rows above it: the word, when the
+// label begins or ends with one.
+func summaryName(s string) string {
+	if len(s) == 0 || len(s) > 32 || s[0] >= '0' && s[0] <= '9' {
+		return ""
+	}
+	first, _, several := strings.Cut(s, " ")
+	if w := summaryToken(first, several); w != "" {
+		return w
+	}
+	if several {
+		return summaryToken(s[strings.LastIndexByte(s, ' ')+1:], true)
+	}
+	return ""
+}
+
+func summaryToken(s string, several bool) string {
+	s = strings.Trim(s, ".:=()")
+	if len(s) > 20 || len(s) == 0 {
+		return ""
+	}
+	if several && len(s) < 3 {
+		return ""
+	}
+	switch c := s[0] | 0x20; c {
+	case 'm', 'a', 't', 's', 'c', 'n', 'v', 'g', 'p', 'u', 0xf8, 0xe9, 0xee, 0xef, 0xc3 | 0x20:
+	default:
+		if s[0] < 0x80 {
+			return ""
+		}
+	}
+	switch strings.ToLower(s) {
+	case "mean", "average", "avg", "mittelwert", "mittel", "moyenne", "media", "promedio", "ø", "means", "averages":
+		return "mean"
+	case "total", "totals", "sum", "subtotal", "sub-total", "summe", "gesamt", "insgesamt", "somme", "suma", "σ", "∑":
+		return "sum"
+	case "count", "n", "anzahl", "nombre", "number":
+		return "count"
+	case "sd", "s.d", "std", "stdev", "st.dev", "stddev", "standardabweichung", "écart-type", "se", "s.e", "sem", "s.e.m":
+		return "spread"
+	case "median":
+		return "median"
+	case "max", "maximum", "min", "minimum":
+		return "extreme"
+	case "var", "variance", "varianz", "cv":
+		return "spread"
+	case "grand", "pooled":
+		return ""
+	}
+	return ""
+}
+
+// summaryWord gives the word for a sum or mean in a record, "" when there is none.
+func (b *body) summaryWord(r int) string {
+	for _, c := range b.layout.columns {
+		s := b.g.seek(c)
+		if k := s.kind(r); class(k) == asWord && k&markWord != 0 {
+			if w := summaryName(s.words.text(s.word(r))); w != "" {
+				return w
+			}
+		}
+	}
+	return ""
+}
+
+// figures keeps sums over the rows read so far, since the last sum or header, to
+// know a row of totals by arithmetic.
+type figures struct {
+	b       *body
+	all     []running // one per number column, over the table so far
+	block   []running // since the last summary
+	changed bool
+	next    int   // first row not yet taken
+	order   []int // rows to take, when figures are asked for
+}
+
+type running struct {
+	n         int
+	sum       float64
+	low, high float64
+}
+
+func (r *running) add(v float64) {
+	if r.n == 0 || v < r.low {
+		r.low = v
+	}
+	if r.n == 0 || v > r.high {
+		r.high = v
+	}
+	r.n++
+	r.sum += v
+}
+
+func newFigures(b *body) *figures {
+	return &figures{b: b, all: make([]running, len(b.numeric)), block: make([]running, len(b.numeric)), next: b.first}
+}
+
+// take marks a row as one of the table; its numbers are summed when somebody asks.
+func (f *figures) take(int) {}
+
+// catchUp sums the rows above r that are kept.
+func (f *figures) catchUp(r int) {
+	for i, c := range f.b.numeric {
+		s := f.b.g.seek(c)
+		for k := f.next; k < r; k++ {
+			if f.b.fate[k] == keep && CellKind(s.kind(k)&kindMask) == Number {
+				v := s.value(k)
+				f.all[i].add(v)
+				f.block[i].add(v)
+			}
+		}
+	}
+	f.next = max(f.next, r)
+}
+
+// summary tells whether a row is a sum, a mean or the like of the rows above, and
+// which. It must say so by a word in a label column or agree in its numbers; a word
+// alone counts where a label that every row has is missing, or at the end.
+func (f *figures) summary(r int, m uint8, last bool) string {
+	b := f.b
+	word := ""
+	if m&rowWord != 0 {
+		word = b.summaryWord(r)
+	}
+	if word != "" && m&rowUnnamed != 0 {
+		f.startBlock(r)
+		return word
+	}
+	if word == "" && m&rowUnnamed == 0 && !b.endsTable(r) {
+		return ""
+	}
+	f.catchUp(r)
+	if by := f.byArithmetic(r, f.block); by != "" {
+		f.startBlock(r)
+		return by + " of the rows above"
+	}
+	if by := f.byArithmetic(r, f.all); by != "" {
+		f.startBlock(r)
+		return by + " of the rows above"
+	}
+	if word != "" && last && b.onceInColumn(r) {
+		f.startBlock(r)
+		return word
+	}
+	return ""
+}
+
+// endsTable tells whether a row is the last of the file or stands before a gap.
+func (b *body) endsTable(r int) bool {
+	for k := r + 1; k < b.end; k++ {
+		if b.fate[k] == drop {
+			continue
+		}
+		return b.g.isGap(k)
+	}
+	return true
+}
+
+// onceInColumn tells whether the summary's word stands nowhere else in its column,
+// so that it is no group's name.
+func (b *body) onceInColumn(r int) bool {
+	for _, c := range b.labels {
+		s := b.g.seek(c)
+		if k := s.kind(r); class(k) != asWord || k&markWord == 0 {
+			continue
+		}
+		text := s.words.text(s.word(r))
+		if summaryName(text) != "" {
+			return len(text) > 2 && b.wordCount(c, s.word(r)) == 1
+		}
+	}
+	return false
+}
+
+// startBlock begins a new block of rows after a summary.
+func (f *figures) startBlock(r int) {
+	f.catchUp(r)
+	for i := range f.block {
+		f.block[i] = running{}
+	}
+}
+
+// byArithmetic compares a row's numbers with the sums and means of the rows above,
+// within half a unit of their last decimal. All of them must agree with one of the
+// two, and so closely that chance would do it less than once in a thousand rows.
+func (f *figures) byArithmetic(r int, over []running) string {
+	b := f.b
+	for _, name := range [...]string{"mean", "sum"} {
+		agree, chance := 0, 1.0
+		wrong := false
+		for i, c := range b.numeric {
+			s := b.g.seek(c)
+			kind := s.kind(r)
+			if CellKind(kind&kindMask) == Blank {
+				continue
+			}
+			if CellKind(kind&kindMask) != Number || over[i].n < 2 {
+				wrong = true
+				break
+			}
+			want := over[i].sum
+			if name == "mean" {
+				want /= float64(over[i].n)
+			}
+			v := s.value(r)
+			unit := math.Pow(10, -float64(max(0, decimalsOf(v, s.form(r), kind))))
+			if math.Abs(v-want) > unit/2+1e-9*math.Abs(want) {
+				wrong = true
+				break
+			}
+			agree++
+			spread := over[i].high - over[i].low
+			if name == "sum" {
+				spread = math.Max(spread, math.Abs(want))
+			}
+			chance *= math.Min(1, unit/math.Max(spread, unit))
+		}
+		if !wrong && agree > 0 && 2*chance < 1e-3 {
+			return name
+		}
+	}
+	return ""
+}
