@@ -1,0 +1,66 @@
+package model
+
+import (
+	"slices"
+
+	"footing/readers"
+)
+
+// Without returns the design without the given used rows, which are set aside
+// for the reason; the receiver is not changed.
+func (d *Design) Without(rows []int, reason string) *Design {
+	out := *d
+	out.Rows = nil
+	out.SetAside = slices.Clone(d.SetAside)
+	for k, i := range d.Rows {
+		if slices.Contains(rows, k) {
+			out.SetAside = append(out.SetAside, SetAside{Row: i, Reason: reason})
+			continue
+		}
+		out.Rows = append(out.Rows, i)
+	}
+	slices.SortStableFunc(out.SetAside, func(a, b SetAside) int { return a.Row - b.Row })
+	out.fill()
+	return &out
+}
+
+// Relabelled returns the design with group labels replaced as the map says;
+// labels that it lacks stay. The receiver is not changed.
+func (d *Design) Relabelled(to map[string]string) *Design {
+	out := *d
+	names := map[string]bool{}
+	label := make([]string, len(d.Group))
+	for i, g := range d.Group {
+		label[i] = d.Groups[g]
+		if t, ok := to[label[i]]; ok {
+			label[i] = t
+		}
+		names[label[i]] = true
+	}
+	out.Groups = nil
+	for name := range names {
+		out.Groups = append(out.Groups, name)
+	}
+	slices.Sort(out.Groups)
+	out.Group = make([]int, len(label))
+	for i, name := range label {
+		out.Group[i], _ = slices.BinarySearch(out.Groups, name)
+	}
+	return &out
+}
+
+// RowsAt lists the used rows that stand at the given rows of the table.
+func (d *Design) RowsAt(table []int) []int {
+	var rows []int
+	for k, i := range d.Rows {
+		if slices.Contains(table, i) {
+			rows = append(rows, k)
+		}
+	}
+	return rows
+}
+
+// Place is the address of a used row's cell in a column.
+func (d *Design) Place(row int, col *readers.Column) readers.Pos {
+	return d.Table.Pos(col, d.Rows[row])
+}
