@@ -1,0 +1,127 @@
+package rules
+
+import (
+	"fmt"
+	"math"
+	"math/rand/v2"
+	"slices"
+	"strings"
+	"testing"
+
+	"footing/readers"
+	"footing/rules/model"
+)
+
+// sheet is a table written by a test: a header and rows of cells.
+type sheet struct {
+	header []string
+	rows   [][]string
+}
+
+func (s *sheet) add(cells ...any) {
+	row := make([]string, len(cells))
+	for i, c := range cells {
+		row[i] = fmt.Sprint(c)
+	}
+	s.rows = append(s.rows, row)
+}
+
+func (s *sheet) text() string {
+	var b strings.Builder
+	fmt.Fprintln(&b, strings.Join(s.header, ","))
+	for _, row := range s.rows {
+		fmt.Fprintln(&b, strings.Join(row, ","))
+	}
+	return b.String()
+}
+
+// kelp draws a sound table: growth over temperature at two sites, n rows.
+func kelp(n int, seed uint64) *sheet {
+	random := rand.New(rand.NewPCG(seed, 1))
+	s := &sheet{header: []string{"site", "temperature (°C)", "growth (mm/day)"}}
+	for i := range n {
+		t := 8 + 12*random.Float64()
+		s.add([]string{"exposed", "sheltered"}[i%2], fmt.Sprintf("%.2f", t), fmt.Sprintf("%.3f", 10-0.4*t+0.7*random.NormFloat64()))
+	}
+	return s
+}
+
+var kelpRoles = model.Roles{Response: "growth", Predictors: []string{"temperature"}, Group: "site"}
+
+// passOf reads a table and fits the model of the roles; no roles screen it.
+func passOf(t *testing.T, s *sheet, roles model.Roles, missing ...string) *Pass {
+	t.Helper()
+	table, err := readers.Read("table.csv", strings.NewReader(s.text()), readers.Options{Missing: missing})
+	if err != nil {
+		t.Fatal(err)
+	}
+	p := &Pass{Table: table, Settings: Settings{Confidence: 0.95, FalseAlarm: 0.05, SmallestDifference: math.NaN()}}
+	if !roles.Named() {
+		return p
+	}
+	if p.Columns, err = model.Resolve(table, roles); err != nil {
+		t.Fatal(err)
+	}
+	p.Design = model.NewDesign(table, p.Columns, roles.CommonSlope)
+	if p.Design.N() == 0 {
+		return p
+	}
+	fit, err := model.NewFit(p.Design)
+	if err != nil {
+		p.NoFit = err.(*model.NoFit)
+		return p
+	}
+	p.Fit, p.Answers = fit, fit.Answers(0.95)
+	return p
+}
+
+// ask runs a rule; one with tests is judged alone at its own rate.
+func ask(t *testing.T, r *Rule, p *Pass) Outcome {
+	t.Helper()
+	if r.Tests != nil {
+		tests, reason := r.Tests(p)
+		if len(tests) == 0 {
+			return notAsked(reason)
+		}
+		j := &Joint{Tests: tests, Asked: true}
+		j.P = min(1, float64(len(tests))*j.Smallest().P)
+		j.PJoint = j.P
+		j.Alarm = j.P <= p.Settings.FalseAlarm
+		own := *p
+		own.Joint = j
+		p = &own
+	}
+	o, err := r.Run(p)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return o
+}
+
+// expect checks the answer, words of the message, and the cells pointed at.
+func expect(t *testing.T, p *Pass, o Outcome, answer Answer, words string, cells ...string) {
+	t.Helper()
+	if o.Answer != answer {
+		t.Errorf("answer %d, want %d: %s", o.Answer, answer, o.Message)
+	}
+	if !strings.Contains(o.Message, words) {
+		t.Errorf("message %q lacks %q", o.Message, words)
+	}
+	if cells == nil {
+		return
+	}
+	var got []string
+	for _, w := range o.Where {
+		switch {
+		case w.Row < 0:
+			got = append(got, w.Column.Title())
+		case w.Column == nil:
+			got = append(got, fmt.Sprint(p.Table.Row(w.Row)))
+		default:
+			got = append(got, p.Table.Address(w.Column, w.Row))
+		}
+	}
+	if !slices.Equal(got, cells) {
+		t.Errorf("points at %v, want %v", got, cells)
+	}
+}
