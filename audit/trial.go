@@ -1,0 +1,187 @@
+package audit
+
+import (
+	"errors"
+	"slices"
+
+	"footing/rules"
+	"footing/rules/model"
+	"footing/rules/remedy"
+)
+
+// trial is one remedy carried out on these rows, from the original start, with
+// the two questions answered anew.
+type trial struct {
+	remedy     *remedy.Remedy
+	tried      bool
+	why        string // why not tried
+	answers    model.Answers
+	slopes     map[string]Judgement // by group
+	difference Judgement            // "" when not asked before and after
+}
+
+// changes reports whether any answer changes.
+func (t trial) changes() bool {
+	if t.difference == Changes {
+		return true
+	}
+	for _, j := range t.slopes {
+		if j == Changes {
+			return true
+		}
+	}
+	return false
+}
+
+// tryRemedies runs the remedies of every breach, and those of the row rules
+// also without one, for the fact that one row decides. Then the answers of the
+// rules become states.
+func (e *examination) tryRemedies() {
+	for _, x := range e.findings {
+		breached := x.outcome.Answer == rules.Breach
+		if breached || (x.outcome.Answer == rules.Sound && len(x.outcome.Target.Rows) > 0) {
+			for _, r := range x.rule.Remedies {
+				if breached || r == remedy.SetAside {
+					x.trials = append(x.trials, e.try(r, x.outcome.Target))
+				}
+			}
+		}
+		x.state = stateOf(x)
+	}
+}
+
+func stateOf(x *examined) State {
+	switch x.outcome.Answer {
+	case rules.Sound:
+		return Pass
+	case rules.CannotTell:
+		return Thin
+	case rules.NotAsked:
+		return Skip
+	}
+	if len(x.outcome.Denies) > 0 {
+		return Stop
+	}
+	for _, t := range x.trials {
+		if t.changes() {
+			return Stop
+		}
+	}
+	return Warn
+}
+
+func (e *examination) try(r *remedy.Remedy, target remedy.Target) trial {
+	t := trial{remedy: r}
+	if !r.CanBeTried() {
+		t.why = "only the owner of the table can do this"
+		return t
+	}
+	p := e.pass
+	if p.Design == nil {
+		t.why = "no model is given"
+		return t
+	}
+	answers, err := r.Try(e.start(target))
+	var not *remedy.NotApplicable
+	if errors.As(err, &not) {
+		t.why = not.Reason
+		return t
+	}
+	t.tried = true
+	t.answers = answers
+	t.slopes = map[string]Judgement{}
+	for _, before := range p.Answers.Slopes {
+		after, found := slopeOf(answers, before.Group)
+		if !found {
+			if _, merged := target.Labels[before.Group]; merged {
+				continue // the group has gone into another, as the remedy intends
+			}
+			t.slopes[before.Group] = Changes
+			continue
+		}
+		t.slopes[before.Group] = judgeSlope(before, after, answers.Scale == p.Answers.Scale)
+	}
+	if p.Answers.Difference != nil || answers.Difference != nil {
+		t.difference = judgeDifference(p.Answers.Difference, answers.Difference, 1-p.Settings.Confidence)
+	}
+	return t
+}
+
+func slopeOf(a model.Answers, group string) (model.Estimate, bool) {
+	for _, s := range a.Slopes {
+		if s.Group == group {
+			return s, true
+		}
+	}
+	return model.Estimate{}, false
+}
+
+// explain finds consequences: a finding of the model that is not there once the
+// remedy of a finding of the table is carried out, or that names the same rows,
+// stands under that finding.
+// The first that explains it, in the order of the list, is its root.
+func (e *examination) explain() error {
+	for _, root := range e.findings {
+		if root.rule.Family != rules.OfTable || (root.state != Warn && root.state != Stop) {
+			continue
+		}
+		mended, err := e.mended(root)
+		if err != nil {
+			return err
+		}
+		for _, x := range e.findings {
+			after, asked := mended[x.rule.Name]
+			if !asked || x.root != "" || !isOpen(x.outcome.Answer) {
+				continue
+			}
+			if !isOpen(after.outcome.Answer) || within(x.outcome.Target.Rows, root.outcome.Target.Rows) {
+				x.root = root.rule.Name
+			}
+		}
+	}
+	return nil
+}
+
+// within reports whether a finding names rows, and only ones that its root
+// names too.
+func within(rows, of []int) bool {
+	for _, i := range rows {
+		if !slices.Contains(of, i) {
+			return false
+		}
+	}
+	return len(rows) > 0
+}
+
+// isOpen tells answers that ask for a decision.
+func isOpen(a rules.Answer) bool { return a == rules.Breach || a == rules.CannotTell }
+
+// mended asks the rules of the model again with the remedy of a finding carried
+// out; nil when none of its remedies can be.
+func (e *examination) mended(root *examined) (map[string]*examined, error) {
+	for _, t := range root.trials {
+		if !t.tried || !t.remedy.CanBeTried() {
+			continue
+		}
+		d, err := t.remedy.Edit(e.start(root.outcome.Target))
+		if err != nil {
+			return nil, err
+		}
+		p := &rules.Pass{Table: e.pass.Table, Columns: e.pass.Columns, Design: d, Settings: e.pass.Settings}
+		fit(p)
+		asked, err := ask(p, rules.OfModel, e.request.Off)
+		if err != nil {
+			return nil, err
+		}
+		byName := map[string]*examined{}
+		for _, x := range asked {
+			byName[x.rule.Name] = x
+		}
+		return byName, nil
+	}
+	return nil, nil
+}
+
+func (e *examination) start(target remedy.Target) remedy.Start {
+	return remedy.Start{Design: e.pass.Design, Fit: e.pass.Fit, Target: target, Confidence: e.pass.Settings.Confidence}
+}
