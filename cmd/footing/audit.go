@@ -1,0 +1,272 @@
+package main
+
+import (
+	"bytes"
+	"fmt"
+	"math"
+	"os"
+	"strings"
+
+	"github.com/spf13/cobra"
+	"golang.org/x/term"
+
+	"footing/audit"
+	"footing/audit/report"
+	"footing/readers"
+	"footing/rules"
+	"footing/rules/model"
+	"footing/rules/wording"
+)
+
+// auditFlags are the flags of footing audit as typed.
+type auditFlags struct {
+	roles   model.Roles
+	reading readers.Options
+	rules   []string
+
+	confidence float64
+	falseAlarm float64
+
+	format  string
+	perRow  bool
+	color   string
+	width   int
+	quiet   bool
+	verbose bool
+	failOn  string
+}
+
+func newAudit() *cobra.Command {
+	var f auditFlags
+	cmd := &cobra.Command{
+		Use:   "audit FILE",
+		Short: "Audit one table: may its slopes be quoted?",
+		Long: "audit reads a table from CSV or XLSX (- for standard input), fits a straight line in each\n" +
+			"group and says what may be quoted. Without roles it screens the table, lists its columns\n" +
+			"and prints the command for the model that they suggest.\n\n" +
+			"Exit codes: 0 nothing at or above --fail-on; 1 something is; 2 the job could not be done;\n" +
+			"3 a fault of footing itself.",
+		Example: "  footing audit kelp.csv\n" +
+			"  footing audit kelp.csv -y growth -x temperature -g site",
+		Args: oneFile,
+		RunE: func(cmd *cobra.Command, args []string) error {
+			return f.run(cmd, args[0])
+		},
+	}
+	f.add(cmd)
+	return cmd
+}
+
+// oneFile asks for exactly one file, in a sentence.
+func oneFile(_ *cobra.Command, args []string) error {
+	switch len(args) {
+	case 1:
+		return nil
+	case 0:
+		return fmt.Errorf("give the file to audit: footing audit FILE")
+	}
+	return fmt.Errorf("%d files are given and one can be audited at a time; put a name with spaces in quotes", len(args))
+}
+
+func (f *auditFlags) add(cmd *cobra.Command) {
+	flags := cmd.Flags()
+	flags.SortFlags = false
+	flags.StringVarP(&f.roles.Response, "response", "y", "", "column of the response")
+	flags.StringArrayVarP(&f.roles.Predictors, "predictor", "x", nil, "column of a predictor; the first is the one whose slopes are compared (repeatable)")
+	flags.StringVarP(&f.roles.Group, "group", "g", "", "column of the groups whose slopes are compared")
+	flags.StringArrayVar(&f.roles.Covariates, "covariate", nil, "column of numbers or labels that enters additively (repeatable)")
+	flags.StringVar(&f.roles.Subject, "subject", "", "column that tells which rows belong to one animal, plot or person")
+	flags.StringVar(&f.roles.Order, "order", "", "column with the sequence in which rows were taken")
+	flags.StringVar(&f.roles.Label, "label", "", "column that identifies the rows")
+	flags.BoolVar(&f.roles.CommonSlope, "common-slope", false, "one slope for all groups")
+
+	flags.StringVar(&f.reading.Sheet, "sheet", "", "sheet of a workbook")
+	flags.StringVar(&f.reading.Range, "range", "", "cells of the table, such as A1:F60")
+	flags.StringVar(&f.reading.HeaderRow, "header-row", "", "row of the header, or none")
+	flags.StringVar(&f.reading.Delimiter, "delimiter", "", "character between the fields of a text file")
+	flags.StringVar(&f.reading.Decimal, "decimal", "", "decimal sign: . or ,")
+	flags.StringVar(&f.reading.Encoding, "encoding", "", "encoding of a text file, such as windows-1252")
+	flags.StringArrayVar(&f.reading.Missing, "missing", nil, "value that stands for a missing one, such as -999 (repeatable)")
+
+	flags.StringArrayVar(&f.rules, "rule", nil, "switch a rule off: NAME=off (repeatable)")
+	flags.Float64Var(&f.confidence, "confidence", 0.95, "confidence of intervals")
+	flags.Float64Var(&f.falseAlarm, "false-alarm", 0.05, "share of sound tables in which the model rules together may alarm")
+
+	flags.StringVar(&f.format, "format", "text", "form of the report: text or json")
+	flags.BoolVar(&f.perRow, "per-row", false, "add row diagnostics to JSON")
+	flags.StringVar(&f.color, "color", "auto", "colour: auto, always or never")
+	flags.IntVar(&f.width, "width", 0, "columns of the text report (default: the terminal's, or 80)")
+	flags.BoolVar(&f.quiet, "quiet", false, "print nothing; only the exit code tells")
+	flags.BoolVar(&f.verbose, "verbose", false, "list every rule and every place")
+	flags.StringVar(&f.failOn, "fail-on", "warn", "least state that makes the exit code 1: stop, warn, thin or never")
+}
+
+func (f *auditFlags) run(cmd *cobra.Command, file string) error {
+	off, err := f.check()
+	if err != nil {
+		return err
+	}
+	t, err := f.read(cmd, file)
+	if err != nil {
+		return err
+	}
+	command := "footing audit " + quotedArgs([]string{file})
+	r, err := audit.Table(t, audit.Request{
+		Roles: f.roles,
+		Settings: rules.Settings{
+			Confidence: f.confidence, FalseAlarm: f.falseAlarm, SmallestDifference: math.NaN(),
+		},
+		Off: off, PerRow: f.perRow, Command: command + f.readingArgs(),
+	})
+	if err != nil {
+		return err
+	}
+	if err := f.write(cmd, r); err != nil {
+		return err
+	}
+	if f.fails(r) {
+		return errFound
+	}
+	return nil
+}
+
+// read opens the file, or standard input for -.
+func (f *auditFlags) read(cmd *cobra.Command, file string) (*readers.Table, error) {
+	if file == "-" {
+		return readers.Read("-", cmd.InOrStdin(), f.reading)
+	}
+	return readers.Open(file, f.reading)
+}
+
+// check refuses flag values that mean nothing and gives the rules that are
+// switched off.
+func (f *auditFlags) check() (off []string, err error) {
+	if err := oneOf("--format", f.format, "text", "json"); err != nil {
+		return nil, err
+	}
+	if err := oneOf("--color", f.color, "auto", "always", "never"); err != nil {
+		return nil, err
+	}
+	if err := oneOf("--fail-on", f.failOn, "stop", "warn", "thin", "never"); err != nil {
+		return nil, err
+	}
+	if !(f.confidence > 0 && f.confidence < 1) {
+		return nil, fmt.Errorf("--confidence is %v; it must lie between 0 and 1, as in 0.95", f.confidence)
+	}
+	if !(f.falseAlarm > 0 && f.falseAlarm < 1) {
+		return nil, fmt.Errorf("--false-alarm is %v; it must lie between 0 and 1, as in 0.05", f.falseAlarm)
+	}
+	if f.width != 0 && (f.width < 40 || f.width > 1000) {
+		return nil, fmt.Errorf("--width is %d; it must lie between 40 and 1000", f.width)
+	}
+	for _, setting := range f.rules {
+		name, value, found := strings.Cut(setting, "=")
+		if !found || value != "off" {
+			return nil, fmt.Errorf("--rule is %q; write it as NAME=off", setting)
+		}
+		if rules.Named(name) == nil {
+			return nil, noSuchRule(name)
+		}
+		off = append(off, name)
+	}
+	return off, nil
+}
+
+func oneOf(flag, value string, allowed ...string) error {
+	for _, a := range allowed {
+		if value == a {
+			return nil
+		}
+	}
+	return fmt.Errorf("%s is %q; it can be %s or %s", flag, value, strings.Join(allowed[:len(allowed)-1], ", "), allowed[len(allowed)-1])
+}
+
+// write writes the report in one piece, so that a fault leaves none behind.
+func (f *auditFlags) write(cmd *cobra.Command, r *audit.Result) error {
+	var whole bytes.Buffer
+	var err error
+	if f.format == "json" {
+		err = report.JSON(&whole, r)
+	} else {
+		width, height := screen()
+		if f.width != 0 {
+			width = f.width
+		}
+		err = report.Text(&whole, r, report.TextOptions{
+			Width: width, Height: height, Color: f.paints(), Verbose: f.verbose, Command: "footing " + quotedArgs(os.Args[1:]),
+		})
+	}
+	if err != nil || f.quiet {
+		return err
+	}
+	_, err = cmd.OutOrStdout().Write(whole.Bytes())
+	return err
+}
+
+// widest is the longest line that is still read with ease.
+const widest = 100
+
+// screen is the size of the terminal; 80 columns and no height without one.
+func screen() (width, height int) {
+	w, h, err := term.GetSize(int(os.Stdout.Fd()))
+	if err != nil || w < 40 {
+		return 80, 0
+	}
+	return min(w, widest), h
+}
+
+// paints decides about colour: a flag, else NO_COLOR (no-color.org), else
+// whether standard output is a terminal.
+func (f *auditFlags) paints() bool {
+	switch f.color {
+	case "always":
+		return true
+	case "never":
+		return false
+	}
+	return os.Getenv("NO_COLOR") == "" && os.Getenv("TERM") != "dumb" && term.IsTerminal(int(os.Stdout.Fd()))
+}
+
+// fails reports whether a finding reaches --fail-on.
+func (f *auditFlags) fails(r *audit.Result) bool {
+	rank := map[audit.State]int{audit.Thin: 1, audit.Warn: 2, audit.Stop: 3}
+	least, counts := rank[audit.State(f.failOn)], f.failOn != "never"
+	for _, finding := range r.Findings {
+		if counts && finding.Waived == nil && rank[finding.State] >= least {
+			return true
+		}
+	}
+	return false
+}
+
+// readingArgs repeats the reading flags for the suggested command.
+func (f *auditFlags) readingArgs() string {
+	var args []string
+	for _, flag := range []struct{ name, value string }{
+		{"--sheet", f.reading.Sheet},
+		{"--range", f.reading.Range},
+		{"--header-row", f.reading.HeaderRow},
+		{"--delimiter", f.reading.Delimiter},
+		{"--decimal", f.reading.Decimal},
+		{"--encoding", f.reading.Encoding},
+	} {
+		if flag.value != "" {
+			args = append(args, flag.name, flag.value)
+		}
+	}
+	for _, code := range f.reading.Missing {
+		args = append(args, "--missing", code)
+	}
+	if len(args) == 0 {
+		return ""
+	}
+	return " " + quotedArgs(args)
+}
+
+func quotedArgs(args []string) string {
+	quoted := make([]string, len(args))
+	for i, a := range args {
+		quoted[i] = wording.Shell(a)
+	}
+	return strings.Join(quoted, " ")
+}
