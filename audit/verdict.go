@@ -240,6 +240,8 @@ func (e *examination) summary(g Grade) string {
 		return "an answer changes or cannot be had: " + named + "; mend the table first"
 	case g == Guarded && screened:
 		return "the table can be used once these are looked at: " + named
+	case g == Guarded && e.denies():
+		return "something is amiss, and not every answer may be quoted: " + named
 	case g == Guarded:
 		return "something is amiss, and the answers hold all the same: " + named
 	case g == Tentative:
@@ -250,12 +252,31 @@ func (e *examination) summary(g Grade) string {
 	return fmt.Sprintf("nothing found in %s that stands against quoting these answers", wording.Count(e.pass.Design.N(), "row"))
 }
 
+// namesIn names the rules whose findings are in a state, a consequence by its
+// root.
 func (e *examination) namesIn(state State) string {
 	var names []string
 	for _, x := range e.findings {
-		if x.state == state && state != "" && x.root == "" {
-			names = append(names, x.rule.Name)
+		if x.state != state || state == "" {
+			continue
+		}
+		name := x.rule.Name
+		if x.root != "" {
+			name = x.root
+		}
+		if !slices.Contains(names, name) {
+			names = append(names, name)
 		}
 	}
 	return wording.List(names)
+}
+
+// denies reports whether some answer may not be quoted.
+func (e *examination) denies() bool {
+	for _, s := range e.pass.Answers.Slopes {
+		if e.standingOf(rules.Question{Group: s.Group}).standing == DoNotQuote {
+			return true
+		}
+	}
+	return e.pass.Answers.Difference != nil && e.standingOf(rules.Question{Difference: true}).standing == DoNotQuote
 }

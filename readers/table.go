@@ -152,7 +152,8 @@ func (c *Column) Kind() Kind { return c.kind }
 // Len gives the number of records, as Table.Len does.
 func (c *Column) Len() int { return c.table.length }
 
-// Count gives the number of records whose cell is of a kind.
+// Count gives the number of records whose cell is of a kind, without the records
+// that have a RowFault.
 func (c *Column) Count(kind CellKind) int {
 	switch kind {
 	case Text:
@@ -387,7 +388,9 @@ func (c *Column) makeLabels() labels {
 func (c *Column) settle() {
 	c.counts = [declaredCode + 1]int{}
 	for row := range c.table.length {
-		c.counts[c.store.kind(c.table.at(row))&kindMask]++
+		if !c.table.faulty(row) {
+			c.counts[c.store.kind(c.table.at(row))&kindMask]++
+		}
 	}
 	c.kind = kindOf(&c.counts)
 	c.labels = sync.OnceValue(c.makeLabels)

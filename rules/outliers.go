@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"strings"
 
 	"footing/rules/numeric"
 	"footing/rules/remedy"
@@ -103,7 +104,7 @@ func (p *Pass) wildWords(rows []int, external []float64) string {
 		}
 		said = append(said, at)
 	}
-	return wording.Some(said, 3)
+	return strings.Join(said, "; ")
 }
 
 // inUnits writes a value of the response with its unit.

@@ -43,7 +43,7 @@ func overlap(p *Pass) (Outcome, error) {
 	}
 	for a := range d.Groups {
 		for b := a + 1; b < len(d.Groups); b++ {
-			if math.Max(low[a], low[b]) > math.Min(high[a], high[b]) {
+			if !d.CommonSlope && math.Max(low[a], low[b]) > math.Min(high[a], high[b]) {
 				o = cannotTell(fmt.Sprintf("%s and %s were measured over different ranges of %s: their slopes may be two parts of one curve", d.Groups[a], d.Groups[b], name))
 				o.Touches = []Question{{Difference: true}}
 			}
