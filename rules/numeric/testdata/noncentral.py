@@ -1,9 +1,10 @@
 """Reference values of noncentral t and the studentized range, by quadrature in
-40-digit arithmetic of mpmath, small tails included.
+mpmath's arithmetic of 40 digits and more, small tails included, and of the studentized range by scipy.
 
     python3 noncentral.py > noncentral_small.tsv
 """
 import mpmath
+import scipy.stats
 from mpmath import mp, mpf
 
 mp.dps = 40
@@ -58,15 +59,20 @@ def emit(name, args, value):
 
 
 def main():
-    print(f"# mpmath {mpmath.__version__}, {mp.dps} digits; noncentral.py")
+    print(f"# mpmath {mpmath.__version__}, scipy {scipy.__version__}; noncentral.py")
     print("function\ta\tb\tc\tvalue")
     for df in [1.5, 8, 46, 400]:
         for ncp in [-6, 0, 2.8, 12, 60]:
             for t in [0.5, 2, 8, 30, 75]:
                 emit("t_upper", [t, df, ncp], t_upper(t, df, ncp))
     for k in [2, 3, 6, 30]:
-        for w in [0.2, 1, 3.3, 6, 15, 30]:
+        for w in [0.2, 3.3, 8, 14]:
+            mp.dps = int(30 + w * w / 8)  # The difference of powers loses that many.
             emit("range_upper", [w, k, float("inf")], range_upper(mpf(w), k))
+    for k in [2, 3, 5, 12, 25]:
+        for df in [1, 2, 3.5, 10, 36, 500]:
+            for q in [0.5, 3.4, 6, 20]:
+                emit("studentized_range", [q, k, df], mpf(float(scipy.stats.studentized_range.sf(q, k, df))))
 
 
 main()
