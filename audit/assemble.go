@@ -6,6 +6,7 @@ import (
 	"slices"
 	"sort"
 
+	"footing/audit/calibrate"
 	"footing/readers"
 	"footing/rules"
 	"footing/rules/model"
@@ -35,7 +36,7 @@ func (e *examination) result() *Result {
 			Group: e.label(s.Group), Rows: s.Rows, Standing: st.standing, Because: st.because,
 			Slope: Number(s.Value), Intercept: Number(s.Intercept), SE: Number(s.SE), DF: Number(s.DF),
 			T: Number(s.T), P: Number(s.P), CI: [2]Number{Number(s.Low), Number(s.High)},
-			RSquared: Number(s.RSquared), PooledSE: Number(s.PooledSE), HC3SE: Number(s.HC3),
+			RSquared: Number(s.RSquared), PooledSE: Number(s.PooledSE), HC3SE: Number(s.HC3), Stated: e.stated(s),
 		})
 	}
 	r.Difference = e.difference()
@@ -65,7 +66,7 @@ func (e *examination) difference() *Difference {
 	st := e.standingOf(rules.Question{Difference: true})
 	d := &Difference{
 		Standing: st.standing, Because: st.because,
-		F: Number(c.F), DF: [2]Number{Number(c.DF1), Number(c.DF2)}, P: Number(c.P), Detectable: Number(c.Detectable), Pairs: []Pair{},
+		F: Number(c.F), DF: [2]Number{Number(c.DF1), Number(c.DF2)}, P: Number(c.P), Detectable: Number(c.Detectable), Agreement: optional(string(e.agreement())), Pairs: []Pair{},
 	}
 	for _, p := range c.Pairs {
 		d.Pairs = append(d.Pairs, Pair{
@@ -92,10 +93,28 @@ func (e *examination) notCompared() string {
 
 // calibration names the rules that are held together.
 func (e *examination) calibration() *Calibration {
-	c := &Calibration{Method: "Holm", FalseAlarm: Number(e.pass.Settings.FalseAlarm), Rules: []string{}}
+	nan := Number(math.NaN())
+	c := &Calibration{
+		Method: "simulated", Seed: e.pass.Settings.Seed, FalseAlarm: Number(e.pass.Settings.FalseAlarm), Rules: []string{},
+		Missed: optional(e.missed()), CaughtLeast: nan, CaughtMost: nan,
+	}
+	if e.pass.Fit == nil || e.pass.Fit.N() > rules.LargestSimulated {
+		c.Method = "formulas"
+	} else {
+		c.Replicates = calibrate.Replicates(e.pass.Fit.N(), e.pass.Settings.Replicates, e.pass.Settings.FalseAlarm)
+	}
 	for _, x := range e.findings {
-		if x.joint != nil && x.joint.Asked {
-			c.Rules = append(c.Rules, x.rule.Name)
+		if x.joint == nil || !x.joint.Asked {
+			continue
+		}
+		c.Rules = append(c.Rules, x.rule.Name)
+		if any := Number(x.joint.AnyPower); any.Defined() {
+			if !(c.CaughtLeast <= any) {
+				c.CaughtLeast = any
+			}
+			if !(c.CaughtMost >= any) {
+				c.CaughtMost = any
+			}
 		}
 	}
 	return c
@@ -268,9 +287,9 @@ func (e *examination) orderedFindings() []Finding {
 func (e *examination) finding(x *examined) Finding {
 	o := x.outcome
 	f := Finding{
-		Rule: x.rule.Name, Family: string(x.rule.Family), State: x.state, Message: wording.Stop(o.Message + e.rowFact(x)),
-		Value: Number(math.NaN()), P: Number(math.NaN()), PJoint: Number(math.NaN()), DF: []Number{},
-		OnlyLimits: x.rule.OnlyLimits, Evidence: map[string]any{}, Where: []Place{}, Remedies: []Remedy{}, ConsequenceOf: optional(x.root),
+		Rule: x.rule.Name, Family: string(x.rule.Family), State: x.state, Message: wording.Stop(o.Message + e.rowFact(x) + powerWords(x) + e.cureWords(x)),
+		Value: Number(math.NaN()), P: Number(math.NaN()), PSimulated: Number(math.NaN()), PJoint: Number(math.NaN()), Power: Number(math.NaN()), DF: []Number{},
+		ByPower: x.byPower, OnlyLimits: x.rule.OnlyLimits, Evidence: map[string]any{}, Where: []Place{}, Remedies: []Remedy{}, ConsequenceOf: optional(x.root), VanishesWith: optional(x.cure),
 	}
 	if m := o.Statistic; m != nil {
 		f.Statistic, f.Value, f.P = &m.Name, Number(m.Value), Number(m.P)
@@ -278,8 +297,14 @@ func (e *examination) finding(x *examined) Finding {
 			f.DF = append(f.DF, Number(df))
 		}
 	}
-	if x.joint != nil && x.joint.Asked {
-		f.PJoint = Number(x.joint.PJoint)
+	if j := x.joint; j != nil && j.Asked {
+		f.PJoint, f.Power = Number(j.PJoint), Number(j.Power)
+		if !j.Closed {
+			f.PSimulated = Number(j.P)
+		}
+		if j.Trouble != nil {
+			f.Breach = &j.Trouble.Words
+		}
 	}
 	for name, v := range o.Evidence {
 		f.Evidence[name] = safe(v)
@@ -287,7 +312,7 @@ func (e *examination) finding(x *examined) Finding {
 	for _, w := range o.Where {
 		f.Where = append(f.Where, e.place(w))
 	}
-	if x.state == Pass || x.state == Skip {
+	if x.state == Skip || (x.state == Pass && !x.rule.AlwaysTry) {
 		return f
 	}
 	f.Remedies = e.remedies(x)
@@ -352,7 +377,7 @@ func (e *examination) remedies(x *examined) []Remedy {
 		if k == 0 && x.outcome.Advice != "" {
 			text = x.outcome.Advice
 		}
-		r := Remedy{Remedy: t.remedy.Name, Text: wording.Sentence(text), Tried: t.tried, Why: optional(t.why), Slopes: []TrialSlope{}, Judged: map[string]string{}}
+		r := Remedy{Remedy: t.remedy.Name, Text: wording.Sentence(text), Source: optional(t.remedy.Source), Tried: t.tried, Why: optional(t.why), Slopes: []TrialSlope{}, Judged: map[string]string{}}
 		if t.tried {
 			e.fillTrial(&r, t)
 		}
