@@ -21,15 +21,25 @@ func powerWords(x *examined) string {
 }
 
 // missed says in one phrase what these rows would have missed: "a bend 7 times
-// in 10, long tails half the time".
+// in 10, long tails and a wild row half the time".
 func (e *examination) missed() string {
-	var parts []string
+	var how []string
+	what := map[string][]string{}
 	for _, x := range e.findings {
-		if x.state == Thin && x.byPower && x.joint.Trouble != nil {
-			parts = append(parts, x.joint.Trouble.Short+" "+oftenMissed(1-x.joint.Power))
+		if x.state != Thin || !x.byPower || x.joint.Trouble == nil {
+			continue
 		}
+		often := oftenMissed(1 - x.joint.Power)
+		if what[often] == nil {
+			how = append(how, often)
+		}
+		what[often] = append(what[often], x.joint.Trouble.Short)
 	}
-	return strings.TrimSpace(wording.List(parts))
+	var parts []string
+	for _, often := range how {
+		parts = append(parts, wording.List(what[often])+" "+often)
+	}
+	return strings.Join(parts, ", ")
 }
 
 // oftenMissed writes a chance in tenths.

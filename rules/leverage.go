@@ -115,7 +115,7 @@ func (p *Pass) standsAlone(rows []int) Outcome {
 		o.Limits = append(o.Limits, Limit{Of: &q, Sentence: fmt.Sprintf(
 			"row %d alone decides it, and no other row can check that.", at)})
 		if p.Answers.Difference != nil && c.group >= 0 {
-			o.Touches = append(o.Touches, Question{Difference: true})
+			o.Limits = append(o.Limits, Limit{Of: &Question{Difference: true}, Sentence: fmt.Sprintf("row %d alone decides the slope%s.", at, ofGroup(p, c.group))})
 		}
 	}
 	return o

@@ -12,7 +12,7 @@ import (
 var LogResponse = &Remedy{
 	Name:   "log-response",
 	Do:     "fit the logarithm of the response; a slope b then means a change by 100(e^b - 1) percent per unit of the predictor",
-	Short:  "on the log scale, in percent and not in units,",
+	Short:  "on the log scale, as a relative change",
 	Source: "Box and Cox 1964, J. R. Stat. Soc. B 26:211",
 	Edit: func(s Start) (*model.Design, error) {
 		if s.Fit.IsTransformed() {

@@ -12,7 +12,7 @@ import (
 var SubjectErrors = &Remedy{
 	Name:   "subject-errors",
 	Do:     "quote the intervals given here, which count subjects and not rows",
-	Short:  "counting subjects, not rows,",
+	Short:  "counting subjects and not rows",
 	Source: "CR2; Bell and McCaffrey 2002, Survey Methodology 28:169",
 	Answer: func(s Start) (model.Answers, error) {
 		named := s.Target.Subjects
