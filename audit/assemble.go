@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"sort"
 
 	"footing/audit/calibrate"
 	"footing/readers"
@@ -253,35 +252,44 @@ func term(f *model.Fit, name string, c model.Contrast) CovariateTerm {
 // of the list, and each consequence under its root; the two are placed by the
 // worse.
 func (e *examination) orderedFindings() []Finding {
-	rank := map[State]int{Stop: 0, Warn: 1, Thin: 2, Pass: 3, Skip: 4}
-	worst := map[string]int{}
-	for _, x := range e.findings {
-		name := x.rule.Name
-		if x.root != "" {
-			name = x.root
-		}
-		if at, ok := worst[name]; !ok || rank[x.state] < at {
-			worst[name] = rank[x.state]
-		}
-	}
-	var heads []*examined
-	under := map[string][]*examined{}
-	for _, x := range e.findings {
-		if x.root != "" {
-			under[x.root] = append(under[x.root], x)
-		} else {
-			heads = append(heads, x)
-		}
-	}
-	sort.SliceStable(heads, func(a, b int) bool { return worst[heads[a].rule.Name] < worst[heads[b].rule.Name] })
 	all := []Finding{}
-	for _, head := range heads {
+	for _, head := range e.orderedHeads() {
 		all = append(all, e.finding(head))
-		for _, x := range under[head.rule.Name] {
-			all = append(all, e.finding(x))
+		for _, x := range e.findings {
+			if x.root == head.rule.Name {
+				all = append(all, e.finding(x))
+			}
 		}
 	}
 	return all
+}
+
+// orderedHeads are the findings that follow from no other, worst first.
+func (e *examination) orderedHeads() []*examined {
+	var heads []*examined
+	for _, x := range e.findings {
+		if x.root == "" {
+			heads = append(heads, x)
+		}
+	}
+	slices.SortStableFunc(heads, func(a, b *examined) int { return severity(e.comesTo(a)) - severity(e.comesTo(b)) })
+	return heads
+}
+
+// comesTo is the worst state of a finding and what follows from it.
+func (e *examination) comesTo(head *examined) State {
+	worst := head.state
+	for _, x := range e.findings {
+		if x.root == head.rule.Name && severity(x.state) < severity(worst) {
+			worst = x.state
+		}
+	}
+	return worst
+}
+
+// severity orders the states, the worst first.
+func severity(s State) int {
+	return slices.Index([]State{Stop, Warn, Thin, Pass, Skip}, s)
 }
 
 func (e *examination) finding(x *examined) Finding {

@@ -300,7 +300,7 @@ func (e *examination) summary(g Grade) string {
 	case g == Unsound && screened:
 		return "this table should be mended before a line is fitted: " + named
 	case g == Unsound:
-		return "an answer changes or cannot be had: " + named + "; mend the table first"
+		return "an answer changes or cannot be had; " + e.beginWith()
 	case g == Guarded && screened:
 		return "the table can be used once these are looked at: " + named
 	case g == Guarded && e.denies():
@@ -313,6 +313,25 @@ func (e *examination) summary(g Grade) string {
 		return fmt.Sprintf("nothing found in the table's %s; no line has been checked", wording.Count(e.pass.Table.Len(), "row"))
 	}
 	return fmt.Sprintf("nothing found in %s that stands against quoting these answers", wording.Count(e.pass.Design.N(), "row"))
+}
+
+// beginWith says what to do first, and what then: the roots of the stops in the
+// order in which they are told.
+func (e *examination) beginWith() string {
+	var names []string
+	for _, f := range e.orderedHeads() {
+		if e.comesTo(f) == Stop {
+			names = append(names, f.rule.Name)
+		}
+	}
+	if len(names) == 0 {
+		return ""
+	}
+	text := "begin with " + names[0]
+	if len(names) > 1 {
+		text += ", then " + wording.List(names[1:])
+	}
+	return text
 }
 
 // tentativeWords says what a clean result leaves open: what the rows would have

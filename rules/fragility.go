@@ -121,9 +121,9 @@ func (p *Pass) search(q model.Question, asked Question, name string) searched {
 func (p *Pass) toldOf(all []searched) Outcome {
 	var fragile, told []string
 	var touched []Question
-	evidence := map[string]any{}
-	flips, reversals, usual, seldom := map[string]any{}, map[string]any{}, map[string]any{}, map[string]any{}
 	var where []Place
+	least := all[0]
+	byAnswer := map[string]any{}
 	for _, s := range all {
 		words := p.rowsToFlip(s)
 		if s.fragile() {
@@ -135,22 +135,42 @@ func (p *Pass) toldOf(all []searched) Outcome {
 		} else {
 			told = append(told, words)
 		}
-		key := strings.TrimPrefix(strings.TrimPrefix(s.name, "the slope of "), "the ")
-		flips[key], reversals[key] = countOrNil(s.found.Flip), countOrNil(s.found.Reverse)
-		usual[key], seldom[key] = s.usual, s.seldomBelow
+		if s.found.Flip > 0 && (least.found.Flip == 0 || s.found.Flip < least.found.Flip) {
+			least = s
+		}
+		byAnswer[s.key()] = s.evidence()
 	}
-	evidence["rows_to_flip"], evidence["rows_to_reverse"], evidence["usual"], evidence["seldom_below"] = flips, reversals, usual, seldom
 	o := sound(strings.Join(told, "; "))
 	if len(fragile) > 0 {
 		o = cannotTell(strings.Join(fragile, "; ") + ", fewer than in nearly all sound tables")
 		o.Touches = touched
 	} else {
-		for _, i := range all[0].found.Rows {
+		for _, i := range least.found.Rows {
 			where = append(where, p.row(i))
 		}
 	}
-	o.Where, o.Evidence = where, evidence
+	o.Where = where
+	o.Evidence = least.evidence()
+	o.Evidence["of"], o.Evidence["by_answer"] = least.key(), byAnswer
 	return o
+}
+
+// key names the answer in the evidence: its group, "slope" or "difference".
+func (s searched) key() string {
+	switch {
+	case s.question.Difference:
+		return "difference"
+	case s.question.Group == "":
+		return "slope"
+	}
+	return s.question.Group
+}
+
+func (s searched) evidence() map[string]any {
+	return map[string]any{
+		"rows_to_flip": countOrNil(s.found.Flip), "rows_to_reverse": countOrNil(s.found.Reverse),
+		"usual": s.usual, "seldom_below": s.seldomBelow,
+	}
 }
 
 // countOrNil is nil for more rows than were tried.
