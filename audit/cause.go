@@ -93,6 +93,9 @@ func (e *examination) under(of, root *rules.Rule, by string) {
 		return
 	}
 	x.root, x.cure = root.Name, by
+	if r.root != "" { // a root that follows from another finding passes it on
+		x.root = r.root
+	}
 }
 
 // noteLog adds to the message of the root that the logarithm of the response
