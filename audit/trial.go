@@ -135,7 +135,7 @@ func (e *examination) try(r *remedy.Remedy, target remedy.Target) trial {
 		t.slopes[before.Group] = judgeSlope(before, after, answers.Scale == p.Answers.Scale)
 	}
 	if p.Answers.Difference != nil || answers.Difference != nil {
-		t.difference = judgeDifference(p.Answers.Difference, answers.Difference, 1-p.Settings.Confidence)
+		t.difference = judgeDifference(p.Answers.Difference, answers.Difference, 1-p.Settings.Confidence, answers.Scale == p.Answers.Scale)
 	}
 	return t
 }

@@ -22,7 +22,7 @@ var Independence = &Rule{
 		"Durbin and Watson's d (1950, Biometrika 37:409) is told beside them",
 	Limit:    jointLimit,
 	Needs:    NeedsScatter,
-	Remedies: []*remedy.Remedy{remedy.SerialErrors, remedy.OrderTerm},
+	Remedies: []*remedy.Remedy{remedy.OrderTerm, remedy.SerialErrors},
 	Chance:   independenceChance,
 	Run:      independence,
 }
