@@ -1129,3 +1129,36 @@ func orZero(k *int) int {
 	}
 	return *k
 }
+
+// TestLevelErrors: where the lack of fit between replicated predictor values is
+// what alarms, their readings may share an error, and the interval that counts
+// levels is that of the reference with the level as subject.
+func TestLevelErrors(t *testing.T) {
+	eachReference(t, "cr2", func(t *testing.T, c remedyCase, want struct{ Estimates []refEstimate }) {
+		if c.Case != "toothgrowth_levels" {
+			return
+		}
+		c.Subject = nil
+		f := findingOf(t, c.audit(t, func(s *rules.Settings) { s.Replicates = 0 }), "linearity")
+		if !strings.Contains(f.Message, "lack-of-fit F") {
+			t.Fatalf("the lack of fit is not what alarms: %s", f.Message)
+		}
+		for _, r := range f.Remedies {
+			if r.Remedy != remedy.LevelErrors.Name {
+				continue
+			}
+			if !r.Tried {
+				t.Fatal(*r.Why)
+			}
+			for k, got := range r.Slopes {
+				w := want.Estimates[k]
+				agree(t, w.Of, got.Slope, w.Estimate, tight, 0)
+				agree(t, w.Of+" se", got.SE, w.SE, tight, 0)
+				agree(t, w.Of+" df", got.DF, w.DF, tight, 0)
+				agree(t, w.Of+" low", got.CI[0], w.Low, tight, 0)
+			}
+			return
+		}
+		t.Error("the remedy is not there")
+	})
+}
