@@ -176,7 +176,7 @@ func (b *body) strayRun(a, end int, marks []uint8) {
 			continue
 		}
 		k, word := kind, ""
-		if k == Note && (marks[r]&(rowWord) != 0 || numbers > 0) {
+		if k == Note && (marks[r]&rowWord != 0 || numbers > 0) {
 			if word = b.summaryWord(r); word != "" {
 				k = Summary
 			}

@@ -47,6 +47,7 @@ type Start struct {
 type Target struct {
 	Rows   []int             // used rows, as indices of the design
 	Labels map[string]string // group labels to be replaced
+	Values []model.Change    // numbers to be put in place of those of the table
 }
 
 // NotApplicable says why a remedy cannot be tried on these rows.
