@@ -4,11 +4,21 @@ package rules
 // one file, its test and one line here.
 var All = []*Rule{
 	// the table
+	UnevenRows,
+	StrayRows,
+	HiddenCells,
+	UncachedFormulas,
+	SpreadsheetErrors,
+	NumberFormat,
+	MixedContent,
+	CensoredValues,
+	DatesAmongNumbers,
 	MissingValues,
 	MissingCodes,
-	MixedContent,
 	LabelVariants,
+	ReusedLabels,
 	CopiedRows,
+	OutOfRange,
 	ConstantColumn,
 
 	// the model; what makes other rules alarm comes first

@@ -55,10 +55,17 @@ func passOf(t *testing.T, s *sheet, roles model.Roles, missing ...string) *Pass 
 	if err != nil {
 		t.Fatal(err)
 	}
+	return passOn(t, table, roles)
+}
+
+// passOn fits the model of the roles to a table.
+func passOn(t *testing.T, table *readers.Table, roles model.Roles) *Pass {
+	t.Helper()
 	p := &Pass{Table: table, Settings: Settings{Confidence: 0.95, FalseAlarm: 0.05, SmallestDifference: math.NaN()}}
 	if !roles.Named() {
 		return p
 	}
+	var err error
 	if p.Columns, err = model.Resolve(table, roles); err != nil {
 		t.Fatal(err)
 	}
@@ -113,6 +120,8 @@ func expect(t *testing.T, p *Pass, o Outcome, answer Answer, words string, cells
 	var got []string
 	for _, w := range o.Where {
 		switch {
+		case w.Stray > 0:
+			got = append(got, fmt.Sprint(w.Stray))
 		case w.Row < 0:
 			got = append(got, w.Column.Title())
 		case w.Column == nil:
