@@ -21,7 +21,7 @@ var FarValues = &Rule{
 	Method: "distance from the median of the group, in robust standard deviations (1.4826 times the median absolute deviation, over all groups together); " +
 		"more where the outer tenth on that side lies further out; and for positive numbers with a long tail above on the scale of logarithms too. " +
 		"A number that comes among its like when divided or multiplied by 10, 100 or 1000 is told as a slipped point",
-	Limit: "7 + 60/n robust standard deviations with n numbers in the column, and 5 + 40/n of the logarithms; at most a twentieth of the numbers; of a column set by design, a number beyond the others by more than twice their range, standing alone. " +
+	Limit: "7 + 60/n robust standard deviations with n numbers in the column, and 4.5 + 30/n of the logarithms; at most a twentieth of the numbers; of a column set by design, a number beyond the others by more than twice their range, standing alone. " +
 		"Normal measurements do not reach so far in 1 of 500 tables",
 	Needs:    NeedsTable,
 	Remedies: []*remedy.Remedy{remedy.MendPoint, remedy.WithoutDoubted},
@@ -100,16 +100,16 @@ func (p *Pass) bulkOf(col *readers.Column) *bulk {
 	const tenth = 1.2816 // normal quantile of 0.9
 	below, above := -numeric.Quantile(rest, 0.1)/tenth, numeric.Quantile(rest, 0.9)/tenth
 	b.below, b.above = max(b.scale, below), max(b.scale, above)
-	if above < 1.6*below {
+	if above < (1.6-2.5/math.Sqrt(float64(len(rest))))*below {
 		return b // even enough to be judged as it is
 	}
 	// A few codes or slips below 0 do not make a column of positive numbers
-	// another one.
-	positive, _ := slices.BinarySearch(f.Sorted, math.SmallestNonzeroFloat64)
-	if 20*positive <= len(f.Sorted) {
+	// another one, and neither do small ones that rounding made 0.
+	negative, _ := slices.BinarySearch(f.Sorted, 0)
+	if 20*negative <= len(f.Sorted) && f.Step > 0 {
 		logs := make([]float64, len(f.Values))
 		for k, v := range f.Values {
-			logs[k] = math.Log(max(v, f.Sorted[positive]))
+			logs[k] = math.Log(max(v, f.Step/2))
 		}
 		b.logCentre, b.logScale = aboutMedians(logs, group, groups)
 	}
@@ -158,7 +158,7 @@ func (b *bulk) isFar(k int) bool {
 	if d := v - b.centre[k]; d <= limit*b.above && -d <= limit*b.below {
 		return false
 	}
-	return b.logCentre == nil || v <= 0 || math.Abs(math.Log(v)-b.logCentre[k]) > (5+40/n)*b.logScale
+	return b.logCentre == nil || v <= 0 || math.Abs(math.Log(v)-b.logCentre[k]) > (4.5+30/n)*b.logScale
 }
 
 // far lists the numbers that lie far out, as positions in the profile.

@@ -21,7 +21,7 @@ var MissingCodes = &Rule{
 	Method: "looks for numbers that are habitual codes (all nines, repeated sevens or eights, 0, -1, other repeated whole numbers), outside the bulk of their column " +
 		"(the middle 96 % of the numbers that are no such codes), and repeated or impossible beside the rest, as a negative number among positive ones is. " +
 		"These are used, and answers without them are told. Codes in words are taken as missing",
-	Limit: "all nines beyond the bulk by its width, or by a quarter of it when repeated or impossible; 0 and -1 repeated, or -1 impossible, by half of it; " +
+	Limit: "all nines beyond the bulk by its width, or by a quarter of it when repeated or impossible; 0 and -1 repeated, or -1 impossible, by half of it; repeated sevens or eights by its width; " +
 		"other repeated whole numbers by twice it. 0 is no suspect in a column that was set by design. Two codes in words, or one that may mean another thing (a dash, nd)",
 	Needs:    NeedsTable,
 	Remedies: []*remedy.Remedy{remedy.AsMissing},
@@ -208,8 +208,10 @@ func habitualCode(v float64, times int, set bool) bool {
 func farGap(v float64, times int, impossible bool) (gap float64, asked bool) {
 	repeated := times > 1
 	switch {
-	case allOf(v, '9') && (repeated || impossible), (allOf(v, '8') || allOf(v, '7')) && repeated:
+	case allOf(v, '9') && (repeated || impossible):
 		return 0.25, true
+	case (allOf(v, '8') || allOf(v, '7')) && repeated:
+		return 1, true
 	case allOf(v, '9'):
 		return 1, true
 	case v == 0 || v == -1:

@@ -18,7 +18,7 @@ var OrderDrift = &Rule{
 	Family: OfTable,
 	Asks:   "Does the response drift along the rows of the file?",
 	Why:    "Rows often stand in the order of measuring; a drift along it that goes with the predictor ends up in the slope, and no other rule looks for it unless the order is named.",
-	Method: "exact t test of the row number as a further column, when no order is named, at least 0.3 of its length is left off the design, and the rows are not sorted by the response",
+	Method: "exact t test of the row number as a further column, when no order is named, at least 0.3 of its length is left off the design, and the rows are not sorted by the response or the predictor",
 	Limit:  "p at most 0.2 %, and a drift of at least 0.15 standard deviations in the root mean square",
 	Needs:  NeedsScatter, Remedies: []*remedy.Remedy{remedy.NameOrder},
 	Run: orderDrift,
@@ -33,6 +33,9 @@ func orderDrift(p *Pass) (Outcome, error) {
 	}
 	if p.sortedByResponse() {
 		return notAsked("the rows are sorted by " + p.Columns.Response.Title() + ", so that their order says nothing"), nil
+	}
+	if p.sortedByPredictor() {
+		return notAsked("the rows are sorted by " + p.Columns.Predictors[0].Title() + ": a drift and a bend of the line cannot be told apart here"), nil
 	}
 	n := p.Fit.N()
 	line, rest := make([]float64, n), make([]float64, n)
@@ -84,6 +87,24 @@ func (p *Pass) sortedByResponse() bool {
 	}
 	for g := range p.Design.Groups {
 		if !sorted(p.Design.OfGroup(p.Design.Y, g)) {
+			return false
+		}
+	}
+	return true
+}
+
+// sortedByPredictor reports whether the used rows are sorted by the main
+// predictor, as a whole or within each group.
+func (p *Pass) sortedByPredictor() bool {
+	x := p.Design.X()
+	if x == nil {
+		return false
+	}
+	if sorted(x) {
+		return true
+	}
+	for g := range p.Design.Groups {
+		if !sorted(p.Design.OfGroup(x, g)) {
 			return false
 		}
 	}

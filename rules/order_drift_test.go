@@ -41,7 +41,7 @@ func TestOrderDriftIsNotAsked(t *testing.T) {
 
 	// the predictor is the order
 	p = passOf(t, s, model.Roles{Response: "growth", Predictors: []string{"no"}})
-	expect(t, p, ask(t, OrderDrift, p), NotAsked, "cannot be told apart")
+	expect(t, p, ask(t, OrderDrift, p), NotAsked, "sorted by no")
 
 	// sorted by the response
 	s = kelp(40, 43)

@@ -73,13 +73,14 @@ func tiesAt(f *Profile, greatest bool) (limit float64, ties int, chance float64)
 	for ties < len(v) && v[ties] == limit {
 		ties++
 	}
-	step := f.Step
 	// The quarter begins behind the ties when these fill it themselves.
 	quarter := v[min(len(v)-1, max(len(v)/4, ties+len(v)/10))]
 	m := ties
 	for m < len(v) && v[m] <= quarter {
 		m++
 	}
+	// Rounding to significant digits makes a coarser grid at the greater end.
+	step := resolution(v[:m])
 	cells := math.Round((quarter-limit)/step) + 1
 	beside, _ := slices.BinarySearch(v, limit+5.5*step)
 	if greatest {

@@ -21,7 +21,7 @@ var UnitShift = &Rule{
 	Method: "looks for three or more consecutive rows, or all rows of a label, that lie more than three robust standard deviations off the others (off their median by group, or off a robust line, Theil 1950 and Sen 1968), " +
 		"apart from them by a gap of one, and among them once brought from another unit: a factor of 10, 100, 1000, 2.54, 25.4, degrees Fahrenheit or Celsius, radians or degrees",
 	Limit: "a chance of at most 0.2 %: the number of rows times the share of rows that lie off elsewhere, once for each row of the stretch. For the rows of one label only factors of ten or more and degrees are asked. " +
-		"Columns set by design are not asked",
+		"In rows sorted by the column or the predictor the gap must be of three, and only factors of ten or more and degrees are asked. Columns set by design are not asked",
 	Needs:    NeedsTable,
 	Remedies: []*remedy.Remedy{remedy.MendUnits, remedy.WithoutDoubted},
 	Run:      unitShift,
@@ -230,6 +230,7 @@ func (v view) stretches() []shift {
 	var all []shift
 	offAt := make([]float64, len(v.f.Values))
 	any := false
+	ordered := v.p.ordered(v.f)
 	for k, x := range v.f.Values {
 		offAt[k] = v.z(k, x)
 		any = any || math.Abs(offAt[k]) > offLine
@@ -238,6 +239,9 @@ func (v view) stretches() []shift {
 		return nil
 	}
 	for _, c := range conversions() {
+		if ordered && !c.coarse {
+			continue
+		}
 		for from := 0; from < len(offAt); {
 			if !v.sure(offAt, c, from) {
 				from++
@@ -250,7 +254,7 @@ func (v view) stretches() []shift {
 				}
 				to++
 			}
-			if s, ok := v.stretch(offAt, c, from, last); ok {
+			if s, ok := v.stretch(offAt, c, from, last, ordered); ok {
 				all = append(all, s)
 			}
 			from = last + 1
@@ -259,13 +263,19 @@ func (v view) stretches() []shift {
 	return all
 }
 
+// ordered reports whether the rows stand sorted by the column itself or by the
+// predictor: neighbours are alike then, and so are neighbours far off.
+func (p *Pass) ordered(f *Profile) bool {
+	return sorted(f.Values) || p.Design != nil && p.sortedByPredictor()
+}
+
 // sure tells a number that lies off as it is and among the others once mended.
 func (v view) sure(offAt []float64, c conversion, k int) bool {
 	return math.Abs(offAt[k]) > offLine && math.Abs(v.z(k, c.mend(v.f.Values[k]))) < onLine
 }
 
 // stretch judges the positions from to last.
-func (v view) stretch(offAt []float64, c conversion, from, last int) (shift, bool) {
+func (v view) stretch(offAt []float64, c conversion, from, last int, ordered bool) (shift, bool) {
 	n := len(offAt)
 	var at []int
 	var mended []float64
@@ -280,7 +290,11 @@ func (v view) stretch(offAt []float64, c conversion, from, last int) (shift, boo
 	if sure < 3 || 10*sure < 7*len(at) || 5*len(at) > 2*n {
 		return shift{}, false
 	}
-	chance, ok := apart(offAt, at, sure)
+	gap := 1.0
+	if ordered {
+		gap = 3
+	}
+	chance, ok := apart(offAt, at, sure, gap)
 	if !ok {
 		return shift{}, false
 	}
@@ -290,7 +304,7 @@ func (v view) stretch(offAt []float64, c conversion, from, last int) (shift, boo
 
 // apart gives the chance that so many given rows lie off when as many do as do
 // elsewhere; ok is false when no gap parts them from the others.
-func apart(offAt []float64, at []int, sure int) (chance float64, ok bool) {
+func apart(offAt []float64, at []int, sure int, gap float64) (chance float64, ok bool) {
 	side := math.Copysign(1, offAt[at[0]])
 	nearest := math.Inf(1)
 	for _, k := range at {
@@ -309,7 +323,7 @@ func apart(offAt []float64, at []int, sure int) (chance float64, ok bool) {
 		if math.Abs(z) > offLine {
 			elsewhere++
 		}
-		if side*z > nearest-1 {
+		if side*z > nearest-gap {
 			close++
 		}
 	}
@@ -373,7 +387,7 @@ func (p *Pass) labelShift(f *Profile, codes []int32, level int32, column, name s
 		if 10*fits < 9*len(at) || math.Abs(numeric.Median(mended)-centre) > scale || spread < 0.4 || spread > 2.5 {
 			continue
 		}
-		chance, ok := apart(offAt, at, fits)
+		chance, ok := apart(offAt, at, fits, 1)
 		if !ok {
 			continue
 		}
