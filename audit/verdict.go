@@ -4,9 +4,11 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"strings"
 
 	"footing/rules"
 	"footing/rules/model"
+	"footing/rules/remedy"
 	"footing/rules/wording"
 )
 
@@ -15,8 +17,7 @@ import (
 type standing struct {
 	standing Standing
 	because  []string
-	denial   string   // the sentence why it may not be quoted
-	cautions []string // what to say beside it
+	denial   string // the sentence why it may not be quoted
 }
 
 func (s *standing) worsen(to Standing, rule string) {
@@ -32,16 +33,20 @@ func (s *standing) worsen(to Standing, rule string) {
 func (e *examination) standingOf(q rules.Question) standing {
 	s := standing{standing: Quote, because: []string{}}
 	for _, x := range e.findings {
-		e.weigh(&s, x, q)
+		if x.root == "" {
+			e.weigh(&s, x, q)
+		}
+	}
+	for _, x := range e.findings {
+		if x.root != "" { // after the roots, whose words go before
+			e.weigh(&s, x, q)
+		}
 	}
 	return s
 }
 
 func (e *examination) weigh(s *standing, x *examined, q rules.Question) {
-	if x.root != "" && len(x.outcome.Denies) == 0 {
-		return // its root is told instead
-	}
-	say := speaker{e.pass}
+	say := e.speaker()
 	for _, limit := range x.outcome.Limits {
 		if limit.Of != nil && *limit.Of == q {
 			s.worsen(DoNotQuote, x.rule.Name)
@@ -66,8 +71,31 @@ func (e *examination) weigh(s *standing, x *examined, q rules.Question) {
 			s.caution(e, x)
 		}
 	case Warn, Thin:
-		if e.bears(x, q) {
+		if !x.byPower && e.bears(x, q) {
 			s.caution(e, x)
+		}
+	case Pass:
+		if x.rule.OnlyLimits && slices.Contains(x.outcome.Touches, q) {
+			s.worsen(QuoteWith, x.rule.Name)
+		}
+	}
+	if x.rule.AlwaysTry && (x.state == Pass || x.state == Thin) {
+		e.weighAlways(s, x, q)
+	}
+}
+
+// weighAlways holds an answer against a remedy whose figures are the ones to
+// quote even without a breach.
+func (e *examination) weighAlways(s *standing, x *examined, q rules.Question) {
+	say := e.speaker()
+	for _, t := range x.trials {
+		switch {
+		case !t.tried:
+		case changed(t, q):
+			s.worsen(DoNotQuote, x.rule.Name)
+			s.deny(e.changeSentence(say, x, t, q))
+		default:
+			s.worsen(QuoteWith, x.rule.Name)
 		}
 	}
 }
@@ -78,9 +106,13 @@ func (s *standing) deny(sentence string) {
 	}
 }
 
+// caution asks for a finding to be named beside an answer; a consequence is
+// named by its root.
 func (s *standing) caution(e *examination, x *examined) {
+	if x.root != "" {
+		return
+	}
 	s.worsen(QuoteWith, x.rule.Name)
-	s.cautions = append(s.cautions, x.rule.Name)
 }
 
 func changed(t trial, q rules.Question) bool {
@@ -158,21 +190,21 @@ func (e *examination) verdict() Verdict {
 	if e.pass.Design == nil {
 		return v
 	}
-	say := speaker{e.pass}
+	say := e.speaker()
 	for _, s := range e.pass.Answers.Slopes {
 		st := e.standingOf(rules.Question{Group: s.Group})
 		if st.standing == DoNotQuote || !s.Exists {
 			v.DoNotQuote = append(v.DoNotQuote, e.denialOf(say, s, st))
 			continue
 		}
-		v.Quote = append(v.Quote, withCaution(say.slope(s), st))
+		v.Quote = append(v.Quote, e.withCaution(say.slope(s), st, rules.Question{Group: s.Group}))
 	}
 	if d := e.pass.Answers.Difference; d != nil {
 		st := e.standingOf(rules.Question{Difference: true})
 		if st.standing == DoNotQuote || !defined(d.P) {
 			v.DoNotQuote = append(v.DoNotQuote, denialSentence(st, "Whether the "+say.kind()+" differ"))
 		} else {
-			v.Quote = append(v.Quote, withCaution(say.difference(d), st))
+			v.Quote = append(v.Quote, e.withCaution(say.difference(d), st, rules.Question{Difference: true}))
 		}
 	}
 	if e.pass.Fit == nil {
@@ -204,11 +236,42 @@ func denialSentence(st standing, answer string) string {
 	return trimStop(answer) + ": " + st.denial
 }
 
-func withCaution(sentence string, st standing) string {
-	if len(st.cautions) == 0 {
+// withCaution adds to a sentence what must be said beside it: the answer under
+// the remedies that were tried, and the rules behind the caution.
+func (e *examination) withCaution(sentence string, st standing, q rules.Question) string {
+	if st.standing != QuoteWith {
 		return sentence
 	}
-	return trimStop(sentence) + " (say beside it: " + wording.List(st.cautions) + ")."
+	say := e.speaker()
+	var beside []string
+	for _, name := range st.because {
+		beside = append(beside, name+e.besideWords(say, e.named(name), q))
+	}
+	return trimStop(sentence) + " (say beside it: " + strings.Join(beside, "; ") + ")."
+}
+
+// besideWords gives the figures of an answer under the remedies of a finding
+// that were tried and move it.
+func (e *examination) besideWords(say speaker, x *examined, q rules.Question) string {
+	var figures []string
+	for _, t := range x.trials {
+		if !t.tried || t.remedy == remedy.LogResponse {
+			continue // percent are no units
+		}
+		if q.Difference {
+			if t.answers.Difference != nil && defined(t.answers.Difference.P) {
+				figures = append(figures, say.differenceShort(t.answers.Difference)+" "+say.trialWords(x, t))
+			}
+			continue
+		}
+		if after, found := slopeOf(t.answers, q.Group); found {
+			figures = append(figures, say.short(after)+" "+say.trialWords(x, t))
+		}
+	}
+	if len(figures) == 0 {
+		return ""
+	}
+	return ", " + figures[0] // the first remedy is the one to be quoted; the others stand with the finding
 }
 
 // grade is the worst state of any finding.
@@ -237,25 +300,84 @@ func (e *examination) summary(g Grade) string {
 	case g == Unsound && screened:
 		return "this table should be mended before a line is fitted: " + named
 	case g == Unsound:
-		return "an answer changes or cannot be had: " + named + "; mend the table first"
+		return "an answer changes or cannot be had; " + e.beginWith()
 	case g == Guarded && screened:
 		return "the table can be used once these are looked at: " + named
+	case g == Guarded && e.denies():
+		return "something is amiss, and not every answer may be quoted: " + named
 	case g == Guarded:
 		return "something is amiss, and the answers hold all the same: " + named
 	case g == Tentative:
-		return "nothing is amiss, but these rows could hardly have shown it: " + named
+		return e.tentativeWords()
 	case screened:
 		return fmt.Sprintf("nothing found in the table's %s; no line has been checked", wording.Count(e.pass.Table.Len(), "row"))
 	}
 	return fmt.Sprintf("nothing found in %s that stands against quoting these answers", wording.Count(e.pass.Design.N(), "row"))
 }
 
+// beginWith says what to do first, and what then: the roots of the stops in the
+// order in which they are told.
+func (e *examination) beginWith() string {
+	var names []string
+	for _, f := range e.orderedHeads() {
+		if e.comesTo(f) == Stop {
+			names = append(names, f.rule.Name)
+		}
+	}
+	if len(names) == 0 {
+		return ""
+	}
+	text := "begin with " + names[0]
+	if len(names) > 1 {
+		text += ", then " + wording.List(names[1:])
+	}
+	return text
+}
+
+// tentativeWords says what a clean result leaves open: what the rows would have
+// missed, and the findings that the owner can act on.
+func (e *examination) tentativeWords() string {
+	text := "nothing found"
+	if missed := e.missed(); missed != "" {
+		text += fmt.Sprintf("; %s would have missed %s", wording.Count(e.pass.Design.N(), "row"), missed)
+	}
+	var open []string
+	for _, x := range e.findings {
+		if x.state == Thin && !x.byPower && x.root == "" {
+			open = append(open, x.rule.Name)
+		}
+	}
+	if len(open) > 0 {
+		text += "; look at " + wording.List(open)
+	}
+	return text
+}
+
+// namesIn names the rules whose findings are in a state, a consequence by its
+// root.
 func (e *examination) namesIn(state State) string {
 	var names []string
 	for _, x := range e.findings {
-		if x.state == state && state != "" && x.root == "" {
-			names = append(names, x.rule.Name)
+		if x.state != state || state == "" {
+			continue
+		}
+		name := x.rule.Name
+		if x.root != "" {
+			name = x.root
+		}
+		if !slices.Contains(names, name) {
+			names = append(names, name)
 		}
 	}
 	return wording.List(names)
+}
+
+// denies reports whether some answer may not be quoted.
+func (e *examination) denies() bool {
+	for _, s := range e.pass.Answers.Slopes {
+		if e.standingOf(rules.Question{Group: s.Group}).standing == DoNotQuote {
+			return true
+		}
+	}
+	return e.pass.Answers.Difference != nil && e.standingOf(rules.Question{Difference: true}).standing == DoNotQuote
 }

@@ -11,10 +11,13 @@ type body struct {
 	columns []int // grid columns of the table
 	numeric []int // those that are numbers
 	labels  []int // those that are text
-	must    []int // columns of text that are filled in nearly every row
+	must    []int // label columns that are filled in nearly every row that is no sum
 	fate    []fate
 	stray   []Stray
-	units   map[int]string // from the row of units, by grid column
+	units   map[int]string  // from the row of units, by grid column
+	names   map[string]bool // of the header, as foldName makes them
+	forms   map[int]*labelForms
+	marks   []uint8 // by record, see markRows
 	figures *figures
 }
 
@@ -111,7 +114,7 @@ func (b *body) extentOf(columns []int) extent {
 // they fill, or bear the same names.
 func (b *body) splitBeside(columns []int) []int {
 	groups := gapsBetween(columns)
-	if len(groups) < 2 {
+	if len(groups) < 2 || len(groups) > manyTables {
 		return columns
 	}
 	extents := make([]extent, len(groups))
@@ -306,28 +309,11 @@ func (b *body) isRuler(r int) bool {
 
 // sortColumns tells number columns from label columns by the rows below.
 func (b *body) sortColumns() {
-	rows := 0
-	for r := b.first; r < b.end; r++ {
-		if b.filled[r] > 0 {
-			rows++
-		}
-	}
 	for _, c := range b.columns {
 		if b.isNumeric(c, b.first, b.end) {
 			b.numeric = append(b.numeric, c)
-			continue
-		}
-		b.labels = append(b.labels, c)
-		filled := 0
-		b.g.seek(c).kinds(func(first int, kinds []uint8) {
-			for r := max(b.first, first); r < min(b.end, first+len(kinds)); r++ {
-				if kinds[r-first] != 0 {
-					filled++
-				}
-			}
-		})
-		if 10*filled >= 9*rows {
-			b.must = append(b.must, c)
+		} else {
+			b.labels = append(b.labels, c)
 		}
 	}
 }

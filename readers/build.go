@@ -114,12 +114,26 @@ func (b *body) uneven(t *Table) error {
 			"%s of %s rows have more or fewer fields than the header, first row %d with %d of %d: check --delimiter, and whether fields that hold it are quoted",
 			count(faults), count(t.length), u.Row, u.Fields, u.Want)
 	}
-	if harmless == t.length && faults == 0 && list[0].Kind == ExtraVoid {
-		b.note("every row ends with a delimiter that the header lacks")
+	if harmless == t.length && alike(list) {
+		if list[0].Kind == ExtraVoid {
+			b.note("every row has %d fields, %d of them blank and beyond the header", list[0].Fields, list[0].Fields-want)
+		} else {
+			b.note("every row has %d fields of %d; the rest counts as blank", list[0].Fields, want)
+		}
 		return nil
 	}
 	b.reading.Uneven = list
 	return nil
+}
+
+// alike tells whether all rows are uneven in the same way.
+func alike(list []Uneven) bool {
+	for _, u := range list {
+		if u.Fields != list[0].Fields || u.Kind != list[0].Kind {
+			return false
+		}
+	}
+	return true
 }
 
 func firstFault(list []Uneven) Uneven {
@@ -239,22 +253,30 @@ func cellsOf(n, all int) string {
 
 // commonUnit gives the unit that most cells of a column have.
 func (b *body) commonUnit(t *Table, s *store) (unit string, cells int) {
-	units := map[uint32]string{}
-	counts := map[string]int{}
+	var units []string
+	var counts []int
+	known := map[string]int32{}
+	byWord := make([]int32, s.words.len()) // 1 + the unit of a text, 0 when it is not read yet
 	for i := range t.length {
 		at := t.at(i)
 		if CellKind(s.kind(at)&kindMask) != measureText {
 			continue
 		}
 		word := s.word(at)
-		u, known := units[word]
-		if !known {
-			_, u, _ = readMeasure(s.words.text(word), b.g.decimal)
-			units[word] = u
+		if byWord[word] == 0 {
+			_, u, _ := readMeasure(s.words.text(word), b.g.decimal)
+			n, ok := known[u]
+			if !ok {
+				n = int32(len(units))
+				known[u] = n
+				units = append(units, u)
+				counts = append(counts, 0)
+			}
+			byWord[word] = n + 1
 		}
-		counts[u]++
-		if counts[u] > cells {
-			unit, cells = u, counts[u]
+		n := byWord[word] - 1
+		if counts[n]++; counts[n] > cells {
+			unit, cells = units[n], counts[n]
 		}
 	}
 	return unit, cells

@@ -100,8 +100,8 @@ type Cell struct {
 // Style is what a workbook shows of a cell beside its value; the zero value is an
 // unmarked cell.
 type Style struct {
-	Fill    string // colour of the background as RRGGBB or a theme's number, "" for none
-	Ink     string // colour of the letters, "" for the standard one
+	Fill    string // colour of the background as RRGGBB, "unknown" if it can't be told, "" for none
+	Ink     string // colour of the letters as RRGGBB or by number, as "theme 4", "" for the standard one
 	Struck  bool   // struck through
 	Percent bool   // shown as per cent, while the value is a fraction
 }

@@ -1,6 +1,7 @@
 package readers
 
 import (
+	"bytes"
 	"errors"
 	"fmt"
 	"io"
@@ -89,8 +90,8 @@ func settleDecimal(g *grid, delimiter byte) (byte, error) {
 	case signTied:
 		e := &g.signs
 		return 0, refuse(Pos{File: g.file},
-			"%d numbers have a decimal point and %d a decimal comma: give --decimal . or --decimal ,",
-			e.count[surePoint], e.count[sureComma])
+			"has as many numbers with a decimal comma as with a decimal point, %d of each: give --decimal . or --decimal ,",
+			e.count[surePoint])
 	case signOpen:
 		return 0, openDecimal(g)
 	}
@@ -112,11 +113,10 @@ func openDecimal(g *grid) error {
 		if _, ok := readNumber(text, g.decimal); !ok {
 			continue
 		}
-		column := fmt.Sprintf("column %s", Letter(i))
 		point := strings.NewReplacer(",", ".").Replace(text)
 		whole := strings.NewReplacer(",", "", ".", "").Replace(text)
-		return refuse(g.pos(i, record), "%q in %s could be %s or %s, and no other number tells: give --decimal . or --decimal ,",
-			text, column, point, whole)
+		return refuse(g.pos(i, record), "%q could be %s or %s, and no number of the file tells: give --decimal . or --decimal ,",
+			text, point, whole)
 	}
 	return refuse(Pos{File: g.file}, "the decimal sign can't be told: give --decimal . or --decimal ,")
 }
@@ -125,7 +125,7 @@ func openDecimal(g *grid) error {
 func loadText(src source, survey *survey, d dialect, opt Options, limits Limits) (*grid, []string, error) {
 	g := &grid{
 		file: src.name, decimal: d.decimal, declared: newDeclared(opt.Missing, d.decimal),
-		lines: runs{step: 1}, maxColumns: limits.Columns, maxCells: limits.Cells,
+		lines: runs{step: 1}, maxColumns: limits.Columns, maxCells: limits.Cells, oneColumn: d.delimiter == 0,
 	}
 	var area *box
 	if opt.Range != "" {
@@ -139,8 +139,8 @@ func loadText(src source, survey *survey, d dialect, opt Options, limits Limits)
 	if err != nil {
 		return nil, nil, err
 	}
-	l := textLoader{grid: g, area: area, oneColumn: d.delimiter == 0}
-	s := newScanner(r, d.delimiter, limits.Line)
+	l := textLoader{grid: g, area: area}
+	s := newScanner(r, d.delimiter, limits.Line, src.size)
 	s.bars = d.bars
 	for first := true; ; first = false {
 		if err := s.scan(); err == io.EOF {
@@ -165,9 +165,9 @@ func loadText(src source, survey *survey, d dialect, opt Options, limits Limits)
 func scanError(file string, s *scanner, err error, limits Limits) error {
 	switch {
 	case errors.Is(err, errUnclosed):
-		return refuse(Pos{File: file, Row: s.opens}, "a quote opens in line %d and never closes: close it, or double it if it belongs to the text", s.opens)
+		return refuse(Pos{File: file, Row: s.opens}, "opens a quote that never closes: close it, or double it if it belongs to the text")
 	case errors.Is(err, errLongLine):
-		return refuse(Pos{File: file, Row: s.next}, "line %d is longer than %s: raise the limit with --limit line=%s, or check the line ends",
+		return refuse(Pos{File: file}, "line %d is longer than %s: raise the limit with --limit line=%s, or check the line ends",
 			s.next, size(limits.Line), limitValue(4*limits.Line))
 	}
 	var e *Error
@@ -184,7 +184,6 @@ func scanError(file string, s *scanner, err error, limits Limits) error {
 type textLoader struct {
 	grid      *grid
 	area      *box
-	oneColumn bool
 	gap       bool
 	padded    int
 	invisible int
@@ -197,7 +196,7 @@ func (l *textLoader) take(s *scanner) error {
 	if l.area != nil && (s.line < l.area.top || s.line > l.area.bottom) {
 		return nil
 	}
-	if !l.oneColumn && s.blank() {
+	if !g.oneColumn && s.blank() {
 		l.gap = true
 		return nil
 	}
@@ -217,7 +216,7 @@ func (l *textLoader) take(s *scanner) error {
 		}
 		filled = filled || wrote
 	}
-	if !filled && !l.oneColumn {
+	if !filled && !g.oneColumn {
 		l.gap = true
 		return nil
 	}
@@ -261,6 +260,8 @@ func (l *textLoader) cell(column, record int, f *field, line int) (bool, error) 
 	s := g.column(column)
 	if v, decimals, whole, ok := plainNumber(text, g.decimal); ok {
 		l.number(s, record, v, decimals|int(form), whole, text)
+	} else if v, ok := longNumber(text, g.decimal); ok {
+		l.number(s, record, v, decimalsOpen|int(form), 16, text)
 	} else {
 		g.word(s, record, text, form, 0)
 	}
@@ -274,7 +275,7 @@ func (l *textLoader) number(s *store, record int, v float64, form, whole int, te
 	if len(g.declared.numbers) > 0 && g.declared.number(v) {
 		kind = uint8(declaredCode)
 	}
-	if decimals := form & decimalsMask; decimals > 0 {
+	if decimals := form & decimalsMask; decimals > 0 && bytes.IndexByte(text, g.decimal) >= 0 {
 		g.signs.add(plainSigns(g.decimal, whole, decimals, text[0] == '0' || text[0] == '-' && text[1] == '0'), record)
 	}
 	s.putNumber(record, kind, uint8(form), v, 0)

@@ -101,7 +101,7 @@ func tally(sample []byte, delimiter byte, whole bool, limits Limits) fieldTally 
 	var t fieldTally
 	widths := map[int]int{}
 	numbers := map[int][2]int{} // column -> numbers, filled cells
-	s := newScanner(bytes.NewReader(sample), delimiter, limits.Line)
+	s := newScanner(bytes.NewReader(sample), delimiter, limits.Line, int64(len(sample)))
 	for s.scan() == nil {
 		if !whole && s.at == s.end && s.eof {
 			break

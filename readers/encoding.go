@@ -74,7 +74,7 @@ func surveyText(src source, opt Options, limits Limits) (*survey, error) {
 	at := Pos{File: src.name}
 	digest := sha256.New()
 	var seen bytesSeen
-	buf := make([]byte, 1<<18)
+	buf := make([]byte, bufferFor(src.size))
 	keep := 0 // bytes of a sequence that the last block cut
 	for first := true; ; first = false {
 		n, err := io.ReadFull(r, buf[keep:])
@@ -227,9 +227,9 @@ func (sv *survey) decide(src source, seen *bytesSeen) error {
 	}
 	at := Pos{File: src.name, Row: line}
 	if seen.multibyte || sv.mark > 0 {
-		return refuse(at, "line %d is not UTF-8, while other lines are: save the file in one encoding, or name it with --encoding", line)
+		return refuse(at, "is not UTF-8, while other lines are: save the file in one encoding, or name it with --encoding")
 	}
-	return refuse(at, "line %d is neither UTF-8 nor Windows-1252: name the encoding with --encoding", line)
+	return refuse(at, "is neither UTF-8 nor Windows-1252: name the encoding with --encoding")
 }
 
 // mustBeText refuses bytes that no text in a byte encoding has.
@@ -241,14 +241,14 @@ func (sv *survey) mustBeText(src source, seen *bytesSeen) error {
 		if at.Row, err = lineOf(src, func(b []byte) int { return bytes.IndexByte(b, 0) }); err != nil {
 			return err
 		}
-		return refuse(at, "line %d holds NUL bytes: not text, or UTF-16 without its mark; try --encoding", at.Row)
+		return refuse(Pos{File: src.name}, "line %d holds NUL bytes: not text, or UTF-16 without its mark; try --encoding", at.Row)
 	case !seen.filled:
 		return refuse(at, "is empty: it has blank lines only")
 	case 100*seen.controls > seen.looked:
 		if at.Row, err = lineOf(src, func(b []byte) int { return bytes.IndexFunc(b, isControl) }); err != nil {
 			return err
 		}
-		return refuse(at, "line %d holds control characters, and more than one character in a hundred is one: not text", at.Row)
+		return refuse(at, "holds control characters, and more than one character in a hundred is one: not text")
 	}
 	return nil
 }
@@ -343,7 +343,7 @@ func (sv *survey) given(src source, seen *bytesSeen, name string) error {
 	if err != nil || line == 0 {
 		return err
 	}
-	return refuse(Pos{File: src.name, Row: line}, "line %d is not UTF-8: name another encoding with --encoding", line)
+	return refuse(Pos{File: src.name, Row: line}, "is not UTF-8: name another encoding with --encoding")
 }
 
 func encodingByName(name string) (encoding.Encoding, error) {
@@ -406,11 +406,9 @@ func (d *decoded) Read(p []byte) (int, error) {
 	nul := bytes.IndexByte(b, 0)
 	switch {
 	case bad >= 0 && (nul < 0 || bad < nul):
-		line := d.breaks(b[:bad])
-		return 0, refuse(Pos{File: d.file, Row: line}, "line %d can't be decoded as %s: name another encoding with --encoding", line, d.encoding.title())
+		return 0, refuse(Pos{File: d.file, Row: d.breaks(b[:bad])}, "holds a character that %s does not have: name another encoding with --encoding", d.encoding.title())
 	case nul >= 0:
-		line := d.breaks(b[:nul])
-		return 0, refuse(Pos{File: d.file, Row: line}, "line %d holds NUL characters when read as %s: not text, or another encoding; try --encoding", line, d.encoding.title())
+		return 0, refuse(Pos{File: d.file, Row: d.breaks(b[:nul])}, "holds NUL characters when read as %s: not text, or another encoding; try --encoding", d.encoding.title())
 	}
 	d.line = d.breaks(b)
 	if n > 0 {

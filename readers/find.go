@@ -2,6 +2,7 @@ package readers
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 
 	"golang.org/x/text/unicode/norm"
@@ -63,15 +64,31 @@ func (t *Table) ambiguous(name string, found []*Column) error {
 }
 
 func (t *Table) unknown(name string) error {
-	var names []string
+	// Columns whose names are alike are told by their full headers.
+	headers := map[string][]string{}
+	var plain []string
 	for _, c := range t.Columns {
-		if c.Header == "" {
+		if c.Header == "" || slices.Contains(headers[c.Name], c.Header) {
 			continue
 		}
-		names = append(names, c.Name)
+		if headers[c.Name] == nil {
+			plain = append(plain, c.Name)
+		}
+		headers[c.Name] = append(headers[c.Name], c.Header)
 	}
+	full := func(names []string) (out []string) {
+		for _, n := range names {
+			if h := headers[n]; len(h) == 1 {
+				out = append(out, n)
+			} else {
+				out = append(out, h...)
+			}
+		}
+		return out
+	}
+	names := full(plain)
 	msg := fmt.Sprintf("there is no column %q", name)
-	near := Nearest(name, names)
+	near := full(Nearest(name, plain))
 	switch {
 	case len(names) == 0:
 		letters := make([]string, 0, len(t.Columns))

@@ -13,6 +13,7 @@ type grid struct {
 	file, sheet string
 	decimal     byte
 	declared    declared
+	oneColumn   bool // a text file without delimiter: a blank line is a blank cell
 	columns     []*store
 	records     int
 	lines       runs       // record -> line or row of the file

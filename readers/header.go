@@ -107,6 +107,10 @@ func (l *layout) seekHeader() error {
 	return nil
 }
 
+// manyTables bounds the search: a file of hundreds of small tables is not one that
+// can be read without --range.
+const manyTables = 64
+
 // candidates lists the records that hold only names and lie above rows with
 // numbers, one for each run of rows that shares its names.
 func (l *layout) candidates() []candidate {
@@ -118,7 +122,7 @@ func (l *layout) candidates() []candidate {
 		}
 	}
 	pending := -1 // a header that a blank row parts from its rows
-	for a := 0; a < l.g.records; {
+	for a := 0; a < l.g.records && len(found) < manyTables; {
 		b := a + 1
 		for b < l.g.records && !l.g.isGap(b) {
 			b++
@@ -154,16 +158,15 @@ func (l *layout) headerWithin(a, b int, found []candidate) (record int, sawNumbe
 		if n == 0 {
 			continue
 		}
-		if l.numbers[r] > 0 {
+		// Titles above have fewer cells; lines of names and values, which instruments
+		// write above their tables, have far fewer.
+		fuller := n > above && (!sawNumbers || above <= 2 || 5*above <= 3*n)
+		switch {
+		case l.numbers[r] > 0:
 			sawNumbers = true
-		} else if l.words[r] > 0 && n > above && (above <= 2 || 5*above <= 3*n) {
-			if !l.again(r, found) && (r > a || !l.repeatsData(r)) {
-				if l.heads(r, r+1, b) {
-					record = r
-				} else if !l.numbersIn(r+1, b) {
-					record = r
-				}
-			}
+		case l.words[r] == 0 || !fuller || l.again(r, found) || l.repeatsData(r):
+		case l.heads(r, r+1, b) || !l.numbersIn(r+1, b):
+			record = r
 		}
 		above = max(above, n)
 	}
@@ -319,6 +322,7 @@ func (l *layout) commentHeader() bool {
 		}
 	}
 	l.header, l.first, l.end, l.comment = r, first, l.g.records, true
+	l.note("row %d, which starts with #, names the columns", l.g.lines.at(r))
 	return true
 }
 
@@ -354,8 +358,8 @@ func (l *layout) numbersForNames(r int) error {
 	for _, c := range l.columns {
 		s := l.g.seek(c)
 		if class(s.kind(r)) == asNumber {
-			return refuse(l.g.pos(c, r), "row %d has numbers where names are expected, %q in column %s: give --header-row N, or --header-row none",
-				l.g.lines.at(r), shortened(l.g.text(c, r)), Letter(c))
+			return refuse(l.g.pos(c, r), "has numbers where names are expected, the first is %q: give --header-row N, or --header-row none",
+				shortened(l.g.text(c, r)))
 		}
 	}
 	return nil

@@ -23,6 +23,7 @@ type layout struct {
 	first   int         // first record under the header
 	end     int         // record after the last of the block
 	others  []candidate // headers of other tables
+	strays  int
 	counts  map[int]*wordCounts
 }
 
@@ -120,7 +121,7 @@ func findTable(g *grid, opt Options, reading Reading) (*Table, error) {
 // has a header.
 func (l *layout) apart() *layout {
 	groups := gapsBetween(l.columns)
-	if len(groups) < 2 || l.opt.HeaderRow != "" {
+	if len(groups) < 2 || len(groups) > manyTables || l.opt.HeaderRow != "" {
 		return nil
 	}
 	var best *layout
@@ -152,22 +153,39 @@ func (l *layout) apart() *layout {
 	return best
 }
 
-// beside notes another table beside this one.
+// beside notes what stands beside the table: another table, or remarks.
 func (l *layout) beside(group []int) {
+	out := Stray{Kind: Note, Beside: true, Word: "column " + Letter(group[0])}
+	if len(group) > 1 {
+		out.Word = "columns " + Letter(group[0]) + " to " + Letter(group[len(group)-1])
+	}
+	numbers := 0
 	for r := range l.g.records {
+		if l.g.isComment(r) {
+			continue
+		}
 		var cells []string
+		number := false
 		for _, c := range group {
-			if s := l.g.text(c, r); s != "" {
-				cells = append(cells, s)
+			if s := l.g.seek(c); s.kind(r) != 0 {
+				number = number || class(s.kind(r)) == asNumber
+				if out.Row == 0 {
+					cells = append(cells, l.g.text(c, r))
+				}
 			}
 		}
 		if len(cells) > 0 {
-			l.reading.Stray = append(l.reading.Stray, Stray{
-				Row: l.g.lines.at(r), Kind: OtherTable, Cells: cells, Beside: true,
-				Word: "columns " + Letter(group[0]) + " to " + Letter(group[len(group)-1]),
-			})
-			return
+			out.Row, out.Cells = l.g.lines.at(r), cells
 		}
+		if number {
+			if numbers++; numbers == 2 {
+				out.Kind = OtherTable
+				break
+			}
+		}
+	}
+	if out.Row > 0 {
+		l.reading.Stray = append(l.reading.Stray, out)
 	}
 }
 
@@ -189,7 +207,7 @@ func (l *layout) name(c int) string {
 		return ""
 	}
 	s := l.g.text(c, l.header)
-	if l.comment && c == l.columns[0] {
+	if l.comment && c == l.columns[0] && strings.TrimLeft(s, "# ") != "" {
 		s = strings.TrimLeft(s, "# ")
 	}
 	return oneLine(trimPadding(s))
@@ -208,17 +226,31 @@ func (l *layout) cells(record int) []string {
 }
 
 func (l *layout) stray(record int, kind StrayKind, word string) Stray {
-	return Stray{Row: l.g.lines.at(record), Kind: kind, Word: word, Cells: l.cells(record)}
+	s := Stray{Row: l.g.lines.at(record), Kind: kind, Word: word}
+	if l.strays++; l.strays <= manyStrays {
+		s.Cells = l.cells(record)
+	}
+	return s
 }
 
-// title notes the rows above the header.
+// manyStrays is the number of stray rows whose texts are kept.
+const manyStrays = 1000
+
+// titles notes the rows above the header, or above the first row where there is
+// none.
 func (l *layout) titles() {
-	for r := range max(l.header, 0) {
-		if l.filled[r] == 0 {
-			continue
+	end := l.header
+	if end < 0 {
+		end = l.first
+	}
+	for r := range end {
+		switch {
+		case l.filled[r] == 0:
+		case l.inTable(r):
+			l.reading.Stray = append(l.reading.Stray, l.stray(r, OtherTable, ""))
+		default:
+			l.reading.Titles = append(l.reading.Titles, l.stray(r, Title, ""))
 		}
-		t := l.stray(r, Title, "")
-		l.reading.Titles = append(l.reading.Titles, t)
 	}
 	switch n := len(l.reading.Titles); {
 	case n == 1:
@@ -228,6 +260,22 @@ func (l *layout) titles() {
 		l.note("rows %d to %d are titles: %q and so on", l.reading.Titles[0].Row, l.reading.Titles[n-1].Row,
 			shortened(strings.Join(l.reading.Titles[0].Cells, " ")))
 	}
+}
+
+// inTable tells whether a row above the header belongs to another table: a block of
+// rows of three cells or of numbers alone. Names with a value each are titles.
+func (l *layout) inTable(r int) bool {
+	for _, c := range l.others {
+		if r < c.record || r >= c.end || c.rows < 2 || r != c.record && l.numbers[r] == 0 {
+			continue
+		}
+		for k := c.record + 1; k < c.end; k++ {
+			if l.numbers[k] > 0 {
+				return l.filled[k] >= 3 || l.filled[k] == l.numbers[k]
+			}
+		}
+	}
+	return false
 }
 
 func (l *layout) note(format string, args ...any) {

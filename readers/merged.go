@@ -7,14 +7,14 @@ func (b *body) fillMerged() {
 	for _, m := range b.g.facts.merged {
 		if b.header < 0 || m.bottom <= b.g.lines.at(b.header) {
 			if b.header >= 0 && b.touches(m) {
-				b.reading.Merged = append(b.reading.Merged, Merged{Range: m.String(), Row: m.top, Title: true})
+				b.reading.Merged = append(b.reading.Merged, mergedOf(m, true))
 			}
 			continue
 		}
 		if !b.touches(m) || m.top > b.g.lines.at(b.g.records-1) {
 			continue
 		}
-		out := Merged{Range: m.String(), Row: m.top}
+		out := mergedOf(m, false)
 		if m.left == m.right && m.top > b.g.lines.at(b.header) && b.isLabel(m.left) {
 			if n := b.fillDown(m); n > 0 {
 				out.Filled = true
@@ -64,4 +64,8 @@ func (b *body) fillDown(m box) (filled int) {
 		filled++
 	}
 	return filled
+}
+
+func mergedOf(m box, title bool) Merged {
+	return Merged{Range: m.String(), Top: m.top, Bottom: m.bottom, Left: m.left, Right: m.right, Title: title}
 }

@@ -24,7 +24,8 @@ func Nearest(name string, among []string) []string {
 		d := editDistance(want, have)
 		inside := len(want) >= 3 && len(have) >= 3 &&
 			(strings.Contains(string(have), string(want)) || strings.Contains(string(want), string(have)))
-		if d > (max(len(want), len(have))+2)/3 && !inside {
+		longest := max(len(want), len(have))
+		if (d > (longest+2)/3 || d == longest) && !inside {
 			continue
 		}
 		if !slices.ContainsFunc(found, func(c candidate) bool { return c.name == n }) {

@@ -7,35 +7,17 @@ func (b *body) columnNotes(t *Table) {
 	var thousands, texts, results int
 	var inThousands, inTexts, inResults []string
 	for _, col := range t.Columns {
-		th, tx, rs := 0, 0, 0
-		for _, p := range col.store.pieces {
-			if p == nil {
-				continue
-			}
-			for _, f := range p.form {
-				if f&formThousands != 0 {
-					th++
-				}
-			}
-			for _, k := range p.kind {
-				if k&markText != 0 {
-					tx++
-				}
-				if k&markResult != 0 {
-					rs++
-				}
-			}
-		}
-		if th > 0 {
-			thousands += th
+		m := col.markCounts()
+		if m.thousands > 0 {
+			thousands += m.thousands
 			inThousands = append(inThousands, col.named())
 		}
-		if tx > 0 && tx == col.Count(Number) {
-			texts += tx
+		if m.texts > 0 && m.texts == col.Count(Number) {
+			texts += m.texts
 			inTexts = append(inTexts, col.named())
 		}
-		if rs > 0 {
-			results += rs
+		if m.results > 0 {
+			results += m.results
 			inResults = append(inResults, col.named())
 		}
 	}
@@ -68,4 +50,48 @@ func cellsAre(n int) string {
 		return "1 cell is"
 	}
 	return count(n) + " cells are"
+}
+
+// markCount counts the marks of a column's cells.
+type markCount struct{ thousands, texts, results int }
+
+func (c *Column) markCounts() (m markCount) {
+	if !c.store.marked() {
+		return m
+	}
+	for i := range c.table.length {
+		at := c.table.at(i)
+		k := c.store.kind(at)
+		if c.store.form(at)&formThousands != 0 {
+			m.thousands++
+		}
+		if k&markText != 0 {
+			m.texts++
+		}
+		if k&markResult != 0 && CellKind(k&kindMask) != Uncached {
+			m.results++
+		}
+	}
+	return m
+}
+
+// marked tells whether any cell of the column may have such a mark; most columns
+// have none and need no second look by record.
+func (s *store) marked() bool {
+	for _, p := range s.pieces {
+		if p == nil {
+			continue
+		}
+		for _, k := range p.kind {
+			if k&(markText|markResult) != 0 {
+				return true
+			}
+		}
+		for _, f := range p.form {
+			if f&formThousands != 0 {
+				return true
+			}
+		}
+	}
+	return false
 }

@@ -52,6 +52,31 @@ func plainNumber(b []byte, decimal byte) (value float64, decimals int, whole int
 	return value, decimals, whole, true
 }
 
+// longNumber reads a plain number of more than 15 digits whose text is the shortest
+// one that reads back as its value, as programs write them: its text need not be
+// kept.
+func longNumber(b []byte, decimal byte) (value float64, ok bool) {
+	if len(b) < 16 || len(b) > 26 || b[0] != '-' && (b[0] < '0' || b[0] > '9') {
+		return 0, false
+	}
+	var in, out [32]byte
+	text := append(in[:0], b...)
+	for i, c := range text {
+		switch {
+		case c == decimal:
+			text[i] = '.'
+		case c == '-' && i == 0, c >= '0' && c <= '9':
+		default:
+			return 0, false
+		}
+	}
+	v, err := strconv.ParseFloat(string(text), 64)
+	if err != nil || string(appendShortest(out[:0], v)) != string(text) {
+		return 0, false
+	}
+	return v, true
+}
+
 // powersOfTen gives 10^n for n from 0 to 15, all exact.
 func powersOfTen(n int) float64 {
 	switch n {
@@ -226,8 +251,9 @@ func ParseNumber(text string, decimal byte) (value float64, ok bool) {
 }
 
 // ParseMeasure splits a number from the unit that follows it, as in "4.1 °C" or
-// "35%". The unit is at most 16 bytes without digits at its start; ok is false
-// when the text is a number alone or no number at all.
+// "35%". The unit is at most 16 bytes: one word that starts with a letter or a sign
+// of measure, or several that are all known units. ok is false when the text is a
+// number alone or no number at all.
 func ParseMeasure(text string, decimal byte) (value float64, unit string, ok bool) {
 	w, unit, ok := readMeasure(text, decimal)
 	return w.value, unit, ok
@@ -265,7 +291,7 @@ func readMeasure(text string, decimal byte) (w written, unit string, ok bool) {
 		}
 	}
 	number, unit := text[:end], trimPadding(text[end:])
-	if unit == "" || len(unit) > 16 || !startsUnit(unit) {
+	if len(unit) > 16 || !mayBeUnit(unit) {
 		return w, "", false
 	}
 	w, ok = readNumber(number, decimal)

@@ -21,10 +21,10 @@ func (f Format) String() string {
 // what was found beside the table. Positions are those of the file; record
 // indexes are those of the table.
 type Reading struct {
-	Encoding  string // "UTF-8", "Windows-1252", ...; empty for workbooks
-	Delimiter string // one character, "" when each line is one field, and for workbooks
-	Decimal   string // "." or ","
-	Given     []string
+	Encoding  string   // "UTF-8", "Windows-1252", ...; empty for workbooks
+	Delimiter string   // one character, "" when each line is one field, and for workbooks
+	Decimal   string   // "." or ","
+	Given     []string // the steps that an option fixed, by the option's name without dashes
 	// Notes are sentences for the reader of the report, in the order of the steps.
 	Notes []string
 
@@ -81,7 +81,7 @@ type Stray struct {
 	Row   int // line or sheet row
 	Kind  StrayKind
 	Word  string   // for a summary what it is: "average", "sum of the rows above"
-	Cells []string // what the row holds, from the first column of the file on, blanks at the end left out
+	Cells []string // what the row holds, from the first column of the file on, blanks at the end left out; nil after the first thousand rows
 	// Beside is true for a table that stands beside this one: Row is its first row
 	// and the other fields speak of its header.
 	Beside bool
@@ -114,14 +114,15 @@ type Uneven struct {
 type Hidden struct {
 	Records []int     // records whose row is hidden
 	Columns []*Column // columns that are hidden
-	Filter  string    // the range of a filter that is set, such as A1:F60
+	Filter  string    // the range of a filter over the rows, such as A1:F60; "" when there is none
 	Struck  int       // cells that are struck through
 }
 
 // Merged is a range of merged cells that touches the table.
 type Merged struct {
-	Range string
-	Row   int // first row
+	Range string // as a spreadsheet writes it
+	// Rows from 1 and columns from 0, all inclusive.
+	Top, Bottom, Left, Right int
 	// Filled is true for a range down one column of labels: its value holds for all
 	// its rows. Otherwise only the first cell has it.
 	Filled bool

@@ -43,9 +43,14 @@ const (
 	longQuoteLines = 64
 )
 
-func newScanner(r io.Reader, delim byte, limit int64) *scanner {
-	return &scanner{r: r, delim: delim, limit: limit, next: 1, buf: make([]byte, readAhead)}
+// newScanner reads from r; length is about how much there is.
+func newScanner(r io.Reader, delim byte, limit, length int64) *scanner {
+	return &scanner{r: r, delim: delim, limit: limit, next: 1, buf: make([]byte, bufferFor(length))}
 }
+
+// bufferFor gives the size of a buffer for a file: small files are common, and
+// memory that is touched costs more than reading them.
+func bufferFor(length int64) int { return int(min(max(length+16, 512), readAhead)) }
 
 // errUnclosed tells that a quote opens at scanner.opens and never closes.
 var errUnclosed = fmt.Errorf("a quote opens and never closes")
@@ -248,6 +253,7 @@ func (s *scanner) cutQuoted(b []byte, from int, last bool) (next int, done, wait
 	open := i
 	double := false
 	breaks := 0
+	closing := -1 // where the line's last quote before a delimiter stands, once it is known
 	for i++; ; {
 		q := bytes.IndexByte(b[i:], '"')
 		if q < 0 {
@@ -285,32 +291,35 @@ func (s *scanner) cutQuoted(b []byte, from int, last bool) (next int, done, wait
 			s.opens = s.next + s.lines - 1
 			return 0, false, false, errUnclosed
 		}
-		at, _, ok := lineEnd(b[i:], last)
-		if !ok {
-			return 0, false, true, nil
+		if closing < 0 {
+			at, _, ok := lineEnd(b[i:], last)
+			if !ok {
+				return 0, false, true, nil
+			}
+			if s.loose == 0 {
+				s.loose = s.next + s.lines - 1
+			}
+			closing = i + s.lastClosing(b[i:i+at])
 		}
-		if s.loose == 0 {
-			s.loose = s.next + s.lines - 1
-		}
-		if !s.closesWithin(b[i : i+at]) {
+		if i > closing {
 			return 0, false, false, nil
 		}
 	}
 }
 
-// closesWithin tells whether a quote before a delimiter or the end stands in the
-// rest of a line.
-func (s *scanner) closesWithin(rest []byte) bool {
-	for i := 0; ; {
-		q := bytes.IndexByte(rest[i:], '"')
+// lastClosing gives the place of the last quote before a delimiter or the end in
+// the rest of a line; -1 when there is none.
+func (s *scanner) lastClosing(rest []byte) int {
+	for end := len(rest); ; {
+		q := bytes.LastIndexByte(rest[:end], '"')
 		if q < 0 {
-			return false
+			return -1
 		}
-		i += q + 1
-		after := s.skipPadding(rest, i)
+		after := s.skipPadding(rest, q+1)
 		if after == len(rest) || rest[after] == s.delim {
-			return true
+			return q
 		}
+		end = q
 	}
 }
 

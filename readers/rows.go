@@ -1,6 +1,9 @@
 package readers
 
-import "strings"
+import (
+	"sort"
+	"strings"
+)
 
 // Marks of a record under the header, from one pass over the columns.
 const (
@@ -14,15 +17,20 @@ const (
 
 // sortRows decides the fate of each record under the header.
 func (b *body) sortRows() {
-	marks := b.markRows()
+	b.marks = b.markRows()
+	marks := b.marks
 	b.figures = newFigures(b)
 	other := false // below a header that is not ours
+	lastNumber := b.end - 1
+	for lastNumber > b.first && marks[lastNumber]&rowNumber == 0 {
+		lastNumber--
+	}
 	for a := b.first; a < b.end; {
 		end := a + 1
 		for end < b.end && !b.g.isGap(end) {
 			end++
 		}
-		b.sortRun(a, end, marks, &other)
+		b.sortRun(a, end, lastNumber, marks, &other)
 		a = end
 	}
 	b.reading.Stray = append(b.reading.Stray, b.stray...)
@@ -62,19 +70,41 @@ func (b *body) markRows() []uint8 {
 			}
 		}
 	}
-	for _, c := range b.must {
+	b.markUnnamed(marks)
+	return marks
+}
+
+// markUnnamed marks the rows that lack a label where nearly every row has one. Rows
+// with a word for a sum don't count: where each group has its mean, they are many.
+func (b *body) markUnnamed(marks []uint8) {
+	rows := 0
+	for r := b.first; r < b.end; r++ {
+		if marks[r]&(rowNumber|rowWord) == rowNumber {
+			rows++
+		}
+	}
+	for _, c := range b.labels {
+		blank := 0
 		s := b.g.seek(c)
+		for r := b.first; r < b.end; r++ {
+			if marks[r]&(rowNumber|rowWord) == rowNumber && s.kind(r) == 0 {
+				blank++
+			}
+		}
+		if 10*blank > rows {
+			continue
+		}
+		b.must = append(b.must, c)
 		for r := b.first; r < b.end; r++ {
 			if s.kind(r) == 0 {
 				marks[r] |= rowUnnamed
 			}
 		}
 	}
-	return marks
 }
 
 // sortRun sorts the records [a, end), a run without a blank row in it.
-func (b *body) sortRun(a, end int, marks []uint8, other *bool) {
+func (b *body) sortRun(a, end, lastNumber int, marks []uint8, other *bool) {
 	if a > b.first && !b.hasOurShape(a, end, marks) && !b.startsAgain(a, end, marks) {
 		b.strayRun(a, end, marks)
 		return
@@ -90,15 +120,18 @@ func (b *body) sortRun(a, end int, marks []uint8, other *bool) {
 		case b.fate[r] == drop:
 			continue
 		case m&rowFilled == 0:
-			// Only a table beside this one fills the row.
-			b.fate[r] = drop
+			// Only a table beside this one fills the row, or nothing: in a file of one
+			// column a blank line between others is a blank cell.
+			if !b.g.oneColumn || r > lastNumber {
+				b.fate[r] = drop
+			}
 			continue
 		case m&rowNumber == 0 && b.takeHeader(r, other):
 			continue
 		case *other:
 			b.drop(r, UnderOther, "")
 			continue
-		case m&rowNumber == 0 && b.isNote(r, m):
+		case m&rowNumber == 0 && b.isNote(r, r > lastNumber):
 			b.drop(r, Note, "")
 			continue
 		case m&(rowWord|rowUnnamed) != 0 || r == tail-1 || r+1 < end && marks[r+1]&rowNumber == 0:
@@ -107,7 +140,6 @@ func (b *body) sortRun(a, end int, marks []uint8, other *bool) {
 				continue
 			}
 		}
-		b.figures.take(r)
 	}
 }
 
@@ -132,10 +164,9 @@ func (b *body) hasOurShape(a, end int, marks []uint8) bool {
 			good++
 		}
 	}
-	for i := range b.others {
-		if b.others[i].record >= a && b.others[i].record < end {
-			return false
-		}
+	i := sort.Search(len(b.others), func(i int) bool { return b.others[i].record >= a })
+	if i < len(b.others) && b.others[i].record < end {
+		return false
 	}
 	return 2*good >= rows && good > 0
 }
@@ -172,7 +203,8 @@ func (b *body) strayRun(a, end int, marks []uint8) {
 		kind = OtherTable
 	}
 	for r := a; r < end; r++ {
-		if b.fate[r] == drop || b.filled[r] == 0 {
+		if b.fate[r] == drop || marks[r]&rowFilled == 0 {
+			b.fate[r] = drop
 			continue
 		}
 		k, word := kind, ""
@@ -188,7 +220,7 @@ func (b *body) strayRun(a, end int, marks []uint8) {
 // takeHeader deals with a row that has the header's names once more; other is set
 // while the rows belong to a header of another order.
 func (b *body) takeHeader(r int, other *bool) bool {
-	if b.header < 0 {
+	if b.header < 0 || !b.maySayNames(r) {
 		return false
 	}
 	same, permuted := b.sameNames(b.header, r)
@@ -205,55 +237,109 @@ func (b *body) takeHeader(r int, other *bool) bool {
 	return true
 }
 
-// isNote tells whether a row without a number is a remark: one text alone, which
-// does not look like the labels of its column.
-func (b *body) isNote(r int, m uint8) bool {
-	if len(b.columns) < 3 {
-		return false
-	}
-	at := -1
-	for _, c := range b.columns {
+// isNote tells whether a row without a number in a number column is a remark: none
+// of its texts looks like a label of this table, and it is one text alone, or has
+// too few fields, or stands at the end.
+func (b *body) isNote(r int, tail bool) bool {
+	filled, inNumbers := 0, 0
+	for _, c := range b.numeric {
 		switch class(b.g.seek(c).kind(r)) {
 		case asBlank:
 		case asWord:
-			if at >= 0 {
+			filled++
+			inNumbers++
+		default:
+			return false // a missing code stands for a measurement
+		}
+	}
+	for _, c := range b.labels {
+		s := b.g.seek(c)
+		switch class(s.kind(r)) {
+		case asBlank:
+			continue
+		case asWord:
+			if b.looksLikeLabel(c, r) {
 				return false
 			}
-			at = c
-		default:
+		}
+		filled++
+	}
+	short := b.g.sheet == "" && b.header >= 0 && b.g.fields.at(r) < b.g.fields.at(b.header)
+	switch {
+	case filled == 0 || len(b.columns) < 2:
+		return false
+	case short:
+		return true
+	case filled == 1:
+		return inNumbers == 0 || tail
+	}
+	return inNumbers == 0 && tail
+}
+
+// maySayNames is a quick look whether a row may be the header once more: one of its
+// first two texts is a name of the header.
+func (b *body) maySayNames(r int) bool {
+	if b.names == nil {
+		b.names = map[string]bool{}
+		for _, c := range b.layout.columns {
+			b.names[foldName(b.g.text(c, b.header))] = true
+		}
+	}
+	seen := 0
+	for _, c := range b.layout.columns {
+		s := b.g.seek(c)
+		if k := s.kind(r); class(k) != asWord || k&markWord == 0 {
+			continue
+		}
+		if b.names[foldName(s.words.text(s.word(r)))] {
+			return true
+		}
+		if seen++; seen == 2 {
 			return false
 		}
 	}
-	if at < 0 {
-		return false
+	return false
+}
+
+// labelForms tells how the labels of a column are written, by the rows with numbers.
+type labelForms struct {
+	known    map[uint32]bool // words
+	patterns map[string]int
+}
+
+// manyLabels is the number of rows that the labels' forms are taken from.
+const manyLabels = 20_000
+
+func (b *body) labelForms(c int) *labelForms {
+	if f := b.forms[c]; f != nil {
+		return f
 	}
-	for _, c := range b.numeric {
-		if c == at {
-			return false // a text in place of a number is a fault of that cell
+	if b.forms == nil {
+		b.forms = map[int]*labelForms{}
+	}
+	f := &labelForms{known: map[uint32]bool{}, patterns: map[string]int{}}
+	b.forms[c] = f
+	s := b.g.seek(c)
+	for r := b.first; r < min(b.end, b.first+manyLabels); r++ {
+		if k := s.kind(r); b.marks[r]&rowNumber != 0 && class(k) == asWord && k&markWord != 0 {
+			word := s.word(r)
+			f.known[word] = true
+			f.patterns[pattern(s.words.text(word))]++
 		}
 	}
-	return !b.looksLikeLabel(at, r)
+	return f
 }
 
 // looksLikeLabel tells whether a text is one of the labels of its column, or made
 // as they are: letters and digits in the same order.
 func (b *body) looksLikeLabel(c, r int) bool {
+	f := b.labelForms(c)
 	s := b.g.seek(c)
+	if s.kind(r)&markWord == 0 {
+		return true // a date or a truth value, stored as such
+	}
 	word := s.word(r)
-	if b.wordCount(c, word) > 1 {
-		return true
-	}
-	want := pattern(s.words.text(word))
-	alike := 0
-	for k := b.first; k < min(b.end, b.first+2000); k++ {
-		if k != r && b.numbers[k] > 0 && class(s.kind(k)) == asWord && pattern(s.words.text(s.word(k))) == want {
-			alike++
-			if alike >= 2 {
-				return true
-			}
-		}
-	}
-	return false
+	return f.known[word] || f.patterns[pattern(s.words.text(word))] >= 2
 }
 
 // pattern writes a label as its sequence of letters (a), digits (9) and others.

@@ -17,6 +17,7 @@ type sheetPass struct {
 	column int // of the last cell of the row
 	record int // of the open row in the grid, -1 before it has a cell
 	last   int // last row that has a record
+	inRow  bool
 	blank  int // formulas whose stored result is an empty text
 
 	zeroHeight bool
@@ -97,8 +98,7 @@ func (p *sheetPass) progress() string {
 	if p.row == 0 {
 		return ""
 	}
-	if p.pass != nil && len(p.open) > 2 {
-		// The row that is open is the one that broke off.
+	if p.inRow {
 		return fmt.Sprintf(" in row %d", p.row)
 	}
 	return fmt.Sprintf(" after row %d", p.row)
@@ -166,6 +166,10 @@ func (p *sheetPass) end(name string) error {
 		if p.in() == "row" {
 			return p.endCell()
 		}
+	case "row":
+		if p.in() == "sheetData" {
+			p.inRow = false
+		}
 	case "t", "rPh", "r":
 		p.cell.text.end(name)
 	}
@@ -197,14 +201,14 @@ func (p *sheetPass) startRow(e xml.StartElement) error {
 			return p.broken(fmt.Sprintf("has a row numbered %q", r))
 		}
 		if n <= p.row {
-			return p.broken(fmt.Sprintf("has row %d", n))
+			return p.broken(fmt.Sprintf("has row %d out of order", n))
 		}
 		row = n
 	}
 	if row > lastSheetRow {
 		return p.broken("has more rows than a sheet can have")
 	}
-	p.row, p.column, p.record = row, -1, -1
+	p.row, p.column, p.record, p.inRow = row, -1, -1, true
 	hidden := attr(e, "hidden")
 	if truth(hidden) || p.zeroHeight && hidden == "" && attr(e, "ht") == "" || attr(e, "ht") == "0" {
 		p.g.facts.hiddenRows = append(p.g.facts.hiddenRows, int32(row))
@@ -227,7 +231,7 @@ func (p *sheetPass) startCell(e xml.StartElement) error {
 				return p.broken(fmt.Sprintf("has a cell with the address %q", v))
 			}
 			if row != p.row {
-				return p.broken(fmt.Sprintf("has the cell %s in row %d, out of its row", v, p.row))
+				return p.broken(fmt.Sprintf("has the cell %s out of its row", v))
 			}
 			if column <= p.column {
 				return p.broken(fmt.Sprintf("has the cell %s out of order", v))

@@ -56,7 +56,8 @@ func (s *styles) open(a *archive) error {
 	if err != nil {
 		return err
 	}
-	var theme []byte
+	// Without a theme the library knows no colours at all.
+	theme := []byte(`<a:theme xmlns:a="http://schemas.openxmlformats.org/drawingml/2006/main"/>`)
 	if s.theme != "" && a.has(s.theme) {
 		if theme, err = a.whole(s.theme); err != nil {
 			return err
@@ -82,9 +83,6 @@ func (s *styles) open(a *archive) error {
 		{"xl/styles.xml", sheet},
 		{"xl/theme/theme1.xml", theme},
 	} {
-		if part.body == nil {
-			continue
-		}
 		w, err := z.CreateHeader(&zip.FileHeader{Name: part.name, Method: zip.Store})
 		if err == nil {
 			_, err = w.Write(part.body)
@@ -123,6 +121,9 @@ func simplified(st *excelize.Style) cellStyle {
 	}
 	if len(st.Fill.Color) > 0 && !(st.Fill.Type == "pattern" && st.Fill.Pattern == 0) {
 		out.Fill = strings.ToUpper(strings.TrimPrefix(st.Fill.Color[0], "#"))
+		if out.Fill == "" {
+			out.Fill = "unknown"
+		}
 	}
 	format := ""
 	if st.CustomNumFmt != nil {

@@ -88,12 +88,10 @@ func (b *body) summaryWord(r int) string {
 // figures keeps sums over the rows read so far, since the last sum or header, to
 // know a row of totals by arithmetic.
 type figures struct {
-	b       *body
-	all     []running // one per number column, over the table so far
-	block   []running // since the last summary
-	changed bool
-	next    int   // first row not yet taken
-	order   []int // rows to take, when figures are asked for
+	b     *body
+	all   []running // one per number column, over the table so far
+	block []running // since the last summary
+	next  int       // first row that is not in the sums yet
 }
 
 type running struct {
@@ -117,9 +115,6 @@ func newFigures(b *body) *figures {
 	return &figures{b: b, all: make([]running, len(b.numeric)), block: make([]running, len(b.numeric)), next: b.first}
 }
 
-// take marks a row as one of the table; its numbers are summed when somebody asks.
-func (f *figures) take(int) {}
-
 // catchUp sums the rows above r that are kept.
 func (f *figures) catchUp(r int) {
 	for i, c := range f.b.numeric {
@@ -139,32 +134,103 @@ func (f *figures) catchUp(r int) {
 // which. It must say so by a word in a label column or agree in its numbers; a word
 // alone counts where a label that every row has is missing, or at the end.
 func (f *figures) summary(r int, m uint8, last bool) string {
-	b := f.b
-	word := ""
-	if m&rowWord != 0 {
-		word = b.summaryWord(r)
+	word := f.b.rowWord(r, m)
+	if word == "" {
+		word = f.byArithmetic(r, m)
+	} else if m&rowUnnamed == 0 && !f.agrees(r, word) && !(last && f.b.onceInColumn(r)) {
+		word = ""
 	}
-	if word != "" && m&rowUnnamed != 0 {
+	if word != "" {
 		f.startBlock(r)
-		return word
 	}
-	if word == "" && m&rowUnnamed == 0 && !b.endsTable(r) {
+	return word
+}
+
+// rowWord gives the word for a sum or mean in a record. A single letter, such as n,
+// is one only where another label is missing: it may be the name of a group.
+func (b *body) rowWord(r int, m uint8) string {
+	if m&rowWord == 0 {
+		return ""
+	}
+	for _, c := range b.layout.columns {
+		s := b.g.seek(c)
+		if k := s.kind(r); class(k) != asWord || k&markWord == 0 {
+			continue
+		}
+		text := s.words.text(s.word(r))
+		if w := summaryName(text); w != "" && (len(text) > 1 || m&rowUnnamed != 0) {
+			return w
+		}
+	}
+	return ""
+}
+
+// agrees tells whether the numbers of a row are what its word says of the rows
+// above.
+func (f *figures) agrees(r int, word string) bool {
+	f.catchUp(r)
+	for _, over := range [...][]running{f.block, f.all} {
+		if _, ok := f.compare(r, word, over); ok {
+			return true
+		}
+	}
+	return false
+}
+
+// byArithmetic tells whether a row without a word has the sums or the means of the
+// rows above. Only a row that lacks a label, or stands at the end, is asked, and
+// its numbers must agree so closely that it would happen by accident once in a
+// thousand rows at most.
+func (f *figures) byArithmetic(r int, m uint8) string {
+	if m&rowUnnamed == 0 && !f.b.endsTable(r) {
 		return ""
 	}
 	f.catchUp(r)
-	if by := f.byArithmetic(r, f.block); by != "" {
-		f.startBlock(r)
-		return by + " of the rows above"
-	}
-	if by := f.byArithmetic(r, f.all); by != "" {
-		f.startBlock(r)
-		return by + " of the rows above"
-	}
-	if word != "" && last && b.onceInColumn(r) {
-		f.startBlock(r)
-		return word
+	for _, over := range [...][]running{f.block, f.all} {
+		for _, name := range [...]string{"mean", "sum"} {
+			if chance, ok := f.compare(r, name, over); ok && 4*chance < 1e-3 {
+				return name + " of the rows above"
+			}
+		}
 	}
 	return ""
+}
+
+// compare holds the numbers of a row against a figure of the rows above, within
+// half a unit of their last decimal. ok is true when all agree; chance is how often
+// they would by accident.
+func (f *figures) compare(r int, name string, over []running) (chance float64, ok bool) {
+	chance = 1
+	for i, c := range f.b.numeric {
+		s := f.b.g.seek(c)
+		kind := s.kind(r)
+		if CellKind(kind&kindMask) == Blank {
+			continue
+		}
+		if CellKind(kind&kindMask) != Number || over[i].n < 2 {
+			return 1, false
+		}
+		want, spread := 0.0, over[i].high-over[i].low
+		switch name {
+		case "mean":
+			want = over[i].sum / float64(over[i].n)
+		case "sum":
+			want = over[i].sum
+			spread = math.Max(spread, math.Abs(want))
+		case "count":
+			want = float64(over[i].n)
+		default:
+			return 1, false
+		}
+		v := s.value(r)
+		unit := math.Pow(10, -float64(max(0, decimalsOf(v, s.form(r), kind))))
+		if math.Abs(v-want) > unit/2+1e-9*math.Abs(want) {
+			return 1, false
+		}
+		ok = true
+		chance *= math.Min(1, unit/math.Max(spread, unit))
+	}
+	return chance, ok
 }
 
 // endsTable tells whether a row is the last of the file or stands before a gap.
@@ -200,46 +266,4 @@ func (f *figures) startBlock(r int) {
 	for i := range f.block {
 		f.block[i] = running{}
 	}
-}
-
-// byArithmetic compares a row's numbers with the sums and means of the rows above,
-// within half a unit of their last decimal. All of them must agree with one of the
-// two, and so closely that chance would do it less than once in a thousand rows.
-func (f *figures) byArithmetic(r int, over []running) string {
-	b := f.b
-	for _, name := range [...]string{"mean", "sum"} {
-		agree, chance := 0, 1.0
-		wrong := false
-		for i, c := range b.numeric {
-			s := b.g.seek(c)
-			kind := s.kind(r)
-			if CellKind(kind&kindMask) == Blank {
-				continue
-			}
-			if CellKind(kind&kindMask) != Number || over[i].n < 2 {
-				wrong = true
-				break
-			}
-			want := over[i].sum
-			if name == "mean" {
-				want /= float64(over[i].n)
-			}
-			v := s.value(r)
-			unit := math.Pow(10, -float64(max(0, decimalsOf(v, s.form(r), kind))))
-			if math.Abs(v-want) > unit/2+1e-9*math.Abs(want) {
-				wrong = true
-				break
-			}
-			agree++
-			spread := over[i].high - over[i].low
-			if name == "sum" {
-				spread = math.Max(spread, math.Abs(want))
-			}
-			chance *= math.Min(1, unit/math.Max(spread, unit))
-		}
-		if !wrong && agree > 0 && 2*chance < 1e-3 {
-			return name
-		}
-	}
-	return ""
 }

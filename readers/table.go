@@ -6,6 +6,7 @@ import (
 	"slices"
 	"sort"
 	"strconv"
+	"strings"
 	"sync"
 )
 
@@ -152,7 +153,8 @@ func (c *Column) Kind() Kind { return c.kind }
 // Len gives the number of records, as Table.Len does.
 func (c *Column) Len() int { return c.table.length }
 
-// Count gives the number of records whose cell is of a kind.
+// Count gives the number of records whose cell is of a kind, without the records
+// that have a RowFault.
 func (c *Column) Count(kind CellKind) int {
 	switch kind {
 	case Text:
@@ -166,6 +168,15 @@ func (c *Column) Count(kind CellKind) int {
 // CellKind gives the kind of one cell; it is much cheaper than Cell.
 func (c *Column) CellKind(row int) CellKind {
 	return CellKind(c.store.kind(c.table.at(row)) & kindMask).public()
+}
+
+// Style gives what a workbook shows of one cell beside its value; it is much
+// cheaper than Cell.
+func (c *Column) Style(row int) Style {
+	if n := int(c.store.style(c.table.at(row))); n < len(c.table.grid.styles) {
+		return c.table.grid.styles[n]
+	}
+	return Style{}
 }
 
 // Cell gives one cell. It makes strings, so ask for what you show, not for every
@@ -185,9 +196,7 @@ func (c *Column) Cell(row int) Cell {
 		Declared:   kind == declaredCode,
 		Hidden:     c.Hidden || g.facts.hides(g.lines.at(at)),
 	}
-	if n := int(s.style(at)); n < len(g.styles) {
-		cell.Style = g.styles[n]
-	}
+	cell.Style = c.Style(row)
 	if stored&markWord != 0 {
 		cell.Text = s.words.text(s.word(at))
 	}
@@ -198,6 +207,10 @@ func (c *Column) Cell(row int) Cell {
 			cell.Text = numberText(cell.Number, form, g.decimal)
 		}
 		cell.Decimals = decimalsOf(cell.Number, form, stored)
+		if c.table.Format == TextFile && form&decimalsMask == decimalsOpen && stored&markWord == 0 {
+			_, fraction, _ := strings.Cut(cell.Text, string(g.decimal))
+			cell.Decimals = len(fraction)
+		}
 		if form&formUnit != 0 {
 			cell.Unit = c.Unit
 		}
@@ -387,7 +400,9 @@ func (c *Column) makeLabels() labels {
 func (c *Column) settle() {
 	c.counts = [declaredCode + 1]int{}
 	for row := range c.table.length {
-		c.counts[c.store.kind(c.table.at(row))&kindMask]++
+		if !c.table.faulty(row) {
+			c.counts[c.store.kind(c.table.at(row))&kindMask]++
+		}
 	}
 	c.kind = kindOf(&c.counts)
 	c.labels = sync.OnceValue(c.makeLabels)

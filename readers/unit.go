@@ -2,21 +2,19 @@ package readers
 
 import "strings"
 
-// startsUnit tells whether a text may be a unit right after a number.
-func startsUnit(s string) bool {
-	if s == "" || s[0] >= '0' && s[0] <= '9' {
+// mayBeUnit tells whether a text may be the unit of the number before it.
+func mayBeUnit(s string) bool {
+	if s == "" || strings.ContainsAny(s, ";,?!=<>|\"\n") {
 		return false
 	}
-	switch s[0] {
-	case '.', ',', '-', '+', '/', ':', ';', '<', '>', '=', '?', '!', '(', ')', '[', ']', '#', '_', '&', '|', '"', '*', '~':
-		return false
-	}
-	for _, r := range s {
-		if r < ' ' {
+	switch c := s[0]; c {
+	case '%', '\'':
+	default:
+		if !isLetter(c) {
 			return false
 		}
 	}
-	return !strings.ContainsAny(s, ";,?!=<>")
+	return !strings.Contains(s, " ") || isUnit(s)
 }
 
 // trimBrackets takes one pair of brackets off a unit.

@@ -219,6 +219,9 @@ func (b *book) takeTable(p *pass, g *grid) error {
 			return err
 		}
 		e, ok := t.(xml.StartElement)
+		if ok && e.Name.Local == "filterColumn" && g.facts.filter == "" && len(g.facts.tables) > 0 {
+			g.facts.filter = g.facts.tables[len(g.facts.tables)-1].ref.String()
+		}
 		if !ok || e.Name.Local != "table" || len(p.open) != 1 {
 			continue
 		}

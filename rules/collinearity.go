@@ -18,9 +18,9 @@ var Collinearity = &Rule{
 	Why:    "Where one predictor is made up of others, its slope cannot be told from theirs.",
 	Method: "rank by pivoted Householder QR of centred columns at 1e-10 of their length; variance inflation factors; " +
 		"condition number of the scaled columns with the intercept (Belsley, Kuh and Welsch 1980, Regression Diagnostics)",
-	Limit:    "a column that others determine; no chance is involved, so no false alarms",
+	Limit:    "a column that others determine is a breach, which involves no chance; thin when the variance of the main slope is inflated tenfold and leaving out one column changes an answer",
 	Needs:    NeedsDesign,
-	Remedies: []*remedy.Remedy{remedy.LeaveOut},
+	Remedies: []*remedy.Remedy{remedy.LeaveOutColumn},
 	Run:      collinearity,
 }
 
@@ -49,9 +49,31 @@ func collinearity(p *Pass) (Outcome, error) {
 		}
 	}
 	o := sound(fmt.Sprintf("the interval of %s is %s times as wide as with unrelated predictors", at, wording.Figure(math.Sqrt(largest), 2)))
+	if x, ok := vif[p.mainPredictor()].(float64); ok && x >= entangledVIF {
+		o.IfChanges = CannotTell
+		o.IfChangesMessage = fmt.Sprintf("%s is entangled with other columns (its interval is %s times as wide as with unrelated ones), and leaving one out changes an answer", p.mainPredictor(), wording.Figure(math.Sqrt(x), 2))
+		for k := range len(p.Design.Predictors) - 1 + len(p.Design.Covariates) {
+			if k == 0 {
+				o.Target.LeaveOut = 0
+				continue
+			}
+			o.Variants = append(o.Variants, remedy.Target{LeaveOut: k})
+		}
+	}
 	o.Statistic = figure("largest variance inflation factor", largest)
 	o.Evidence = map[string]any{"vif": vif, "condition_number": condition}
 	return o, nil
+}
+
+// entangledVIF is the variance inflation from which it is asked whether leaving
+// a column out changes an answer.
+const entangledVIF = 10
+
+func (p *Pass) mainPredictor() string {
+	if p.Design.X() == nil {
+		return ""
+	}
+	return p.Columns.Predictors[0].Title()
 }
 
 // tangled names the columns that cannot be told apart.

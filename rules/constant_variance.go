@@ -3,6 +3,10 @@ package rules
 import (
 	"fmt"
 	"math"
+	"math/rand/v2"
+	"slices"
+
+	"gonum.org/v1/gonum/floats"
 
 	"footing/rules/numeric"
 	"footing/rules/remedy"
@@ -15,35 +19,278 @@ var ConstantVariance = &Rule{
 	Family: OfModel,
 	Asks:   "Is the scatter about the lines the same everywhere?",
 	Why:    "Where it is not, the intervals are too narrow in one place and too wide in another.",
-	Method: "studentized Breusch-Pagan test on the model's regressors (Koenker 1981, J. Econometrics 17:107), " +
+	Method: "studentized Breusch-Pagan test on the model's regressors (Koenker 1981, J. Econometrics 17:107), on each predictor alone, " +
 		"and between groups the test about medians of Brown and Forsythe (1974, JASA 69:364)",
-	Limit: jointLimit,
-	Needs: NeedsScatter,
-	Remedies: []*remedy.Remedy{
-		remedy.EvenScatter,
-	},
-	Tests: constantVarianceTests,
-	Run:   constantVariance,
+	Limit:    jointLimit,
+	Needs:    NeedsScatter,
+	Remedies: []*remedy.Remedy{remedy.RobustErrors, remedy.OwnVariance, remedy.LogResponse, remedy.WildBootstrap},
+	Chance:   constantVarianceChance,
+	Run:      constantVariance,
 }
 
-func constantVarianceTests(p *Pass) ([]Test, string) {
+const (
+	koenkerName = "studentized Breusch-Pagan LM"
+	brownName   = "Brown-Forsythe F"
+)
+
+func constantVarianceChance(p *Pass) (*Chance, string) {
 	f := p.Fit
-	var tests []Test
-	if f.P() > 1 {
-		lm := numeric.KoenkerLM(make([]float64, f.N()), f.Residual, f.Basis.Q())
-		df := float64(f.P() - 1)
-		tests = append(tests, Test{Name: "studentized Breusch-Pagan LM", Value: lm, DF: []float64{df}, P: numeric.ChiSquaredUpper(lm, df)})
+	if f.DF < 2 {
+		return nil, "one row is left to judge from"
 	}
-	if len(p.Design.Groups) > 1 {
-		stat, d1, d2, pValue := numeric.BrownForsythe(f.Residual, p.Design.Group, len(p.Design.Groups))
-		if !math.IsNaN(pValue) {
-			tests = append(tests, Test{Name: "Brown-Forsythe F", Value: stat, DF: []float64{d1, d2}, P: pValue})
-		}
-	}
-	if len(tests) == 0 {
+	if f.P() < 2 {
 		return nil, "one mean and no predictor: nothing for the scatter to vary with"
 	}
-	return tests, ""
+	c := &Chance{Members: []Member{p.koenker()}, Floor: p.spreadFloor()}
+	for _, m := range p.spreadAlong() {
+		c.Members = append(c.Members, m)
+	}
+	if len(p.Design.Groups) > 1 {
+		if m, ok := p.brownForsythe(); ok {
+			c.Members = append(c.Members, m)
+		}
+	}
+	c.Breach = p.fanBreach
+	return c, ""
+}
+
+func (p *Pass) koenker() Member {
+	q := p.Fit.Regressors.Q()
+	n := p.Fit.N()
+	lm := numeric.KoenkerLM(make([]float64, n), p.Fit.Residual, q)
+	df := float64(p.Fit.P() - 1)
+	closed := func(lm float64) float64 { return numeric.ChiSquaredUpper(lm, df) }
+	return Member{
+		Test: Test{Name: koenkerName, Value: lm, DF: []float64{df}, P: closed(lm)},
+		New: func() func(*Sample) float64 {
+			scratch := make([]float64, n)
+			return func(s *Sample) float64 { return numeric.KoenkerLM(scratch, s.E, q) }
+		},
+		ClosedP: closed,
+	}
+}
+
+// spreadAlong has the one-degree score of each numeric predictor, taken about
+// its group's mean where it has a slope in each group.
+func (p *Pass) spreadAlong() []Member {
+	values, names := p.numericPredictors()
+	var all []Member
+	for k, v := range values {
+		q := centred(v)
+		if k == 0 && p.Design.X() != nil && !p.Design.CommonSlope {
+			q = p.fromGroupMean()
+		}
+		length := floats.Norm(q, 2)
+		if length == 0 {
+			continue
+		}
+		unit := slices.Clone(q)
+		floats.Scale(1/length, unit)
+		n := float64(p.Fit.N())
+		statistic := func(e []float64, rss float64) float64 {
+			mean := rss / n
+			along, total := 0.0, 0.0
+			for i, r := range e {
+				u := r*r - mean
+				along += unit[i] * u
+				total += u * u
+			}
+			return n * along * along / total
+		}
+		closed := func(lm float64) float64 { return numeric.ChiSquaredUpper(lm, 1) }
+		observed := statistic(p.Fit.Residual, p.Fit.RSS)
+		all = append(all, Member{
+			Test: Test{Name: "score of the spread along " + names[k], Value: observed, DF: []float64{1}, P: closed(observed)},
+			New: func() func(*Sample) float64 {
+				return func(s *Sample) float64 { return statistic(s.E, s.RSS) }
+			},
+			ClosedP: closed,
+		})
+	}
+	return all
+}
+
+func (p *Pass) brownForsythe() (Member, bool) {
+	group, groups := p.Design.Group, len(p.Design.Groups)
+	f, d1, d2, pValue := numeric.BrownForsythe(p.Fit.Residual, group, groups)
+	return Member{
+		Test: Test{Name: brownName, Value: f, DF: []float64{d1, d2}, P: pValue},
+		New: func() func(*Sample) float64 {
+			spread := numeric.NewGroupSpread(group, groups)
+			return func(s *Sample) float64 { return spread.F(s.E) }
+		},
+		ClosedP: func(f float64) float64 { return numeric.FUpper(f, d1, d2) },
+	}, !math.IsNaN(pValue)
+}
+
+// fan is an error SD for each row, with what it does to the worst interval.
+type fan struct {
+	ratio    float64 // largest over smallest SD that it was made with
+	sd       []float64
+	coverage float64 // of the nominal 95 % interval it harms most
+}
+
+// The search for the consequential fan.
+const (
+	leastFan     = 2.0
+	greatestFan  = 10.0
+	leastCover   = 0.90
+	normal95     = 1.959964
+	fanBisection = 40
+)
+
+// fanBreach is the smallest fan along the predictor, or its mirror image, under
+// which some nominal 95 % interval covers less than 90 %.
+func (p *Pass) fanBreach() Trouble {
+	var best fan
+	for _, along := range p.fanDirections() {
+		f := p.smallestFan(along)
+		if best.sd == nil || f.ratio < best.ratio || (f.ratio == best.ratio && f.coverage < best.coverage) {
+			best = f
+		}
+	}
+	words := fmt.Sprintf("scatter %s times as wide at one end of the predictor as at the other", wording.Figure(best.ratio, 2))
+	if p.Design.X() == nil {
+		words = fmt.Sprintf("scatter %s times as wide in the smallest group as in the others", wording.Figure(best.ratio, 2))
+	}
+	return Trouble{
+		Short: "unequal scatter",
+		Words: words,
+		New: func() func(*rand.Rand, []float64) {
+			return func(random *rand.Rand, z []float64) {
+				for i := range z {
+					z[i] = best.sd[i] * random.NormFloat64()
+				}
+			}
+		},
+	}
+}
+
+// fanDirections gives exponents u: the SD of a row is ratio to the power of u.
+func (p *Pass) fanDirections() [][]float64 {
+	n := p.Fit.N()
+	x := p.Design.X()
+	if x == nil {
+		sizes := p.Design.GroupSizes()
+		smallest := slices.Index(sizes, slices.Min(sizes))
+		u := make([]float64, n)
+		for i, g := range p.Design.Group {
+			if g == smallest {
+				u[i] = 1
+			}
+		}
+		return [][]float64{u}
+	}
+	low, high := slices.Min(x), slices.Max(x)
+	up, down := make([]float64, n), make([]float64, n)
+	for i, v := range x {
+		up[i] = (v-low)/(high-low) - 0.5
+		down[i] = -up[i]
+	}
+	return [][]float64{up, down}
+}
+
+func (p *Pass) smallestFan(along []float64) fan {
+	at := func(ratio float64) fan {
+		f := fan{ratio: ratio, sd: make([]float64, len(along))}
+		ms := 0.0
+		for i, u := range along {
+			f.sd[i] = math.Pow(ratio, u)
+			ms += f.sd[i] * f.sd[i]
+		}
+		floats.Scale(1/math.Sqrt(ms/float64(len(along))), f.sd)
+		f.coverage = p.worstCoverage(f.sd)
+		return f
+	}
+	if f := at(leastFan); f.coverage < leastCover {
+		return f
+	}
+	if f := at(greatestFan); !(f.coverage < leastCover) {
+		return f
+	}
+	low, high := math.Log(leastFan), math.Log(greatestFan)
+	for range fanBisection {
+		middle := (low + high) / 2
+		if at(math.Exp(middle)).coverage < leastCover {
+			high = middle
+		} else {
+			low = middle
+		}
+	}
+	return at(math.Exp(high))
+}
+
+// worstCoverage is the coverage of the nominal 95 % interval, over slopes and
+// pair differences, that the error SDs harm most: 2 Phi(1.96/r) - 1 with r the
+// true over the estimated standard error.
+func (p *Pass) worstCoverage(sd []float64) float64 {
+	worst := 1.0
+	consider := func(catcher []float64, rows []int, df float64) {
+		if df <= 0 {
+			return
+		}
+		var actual, squares, expected float64
+		for i, c := range catcher {
+			actual += c * c * sd[i] * sd[i]
+			squares += c * c
+		}
+		for _, i := range rows {
+			expected += sd[i] * sd[i] * (1 - p.Fit.Leverage[i])
+		}
+		r := math.Sqrt(actual / (squares * expected / df))
+		worst = min(worst, 2*numeric.NormalCDF(normal95/r)-1)
+	}
+	everyRow := p.usedRows()
+	terms := p.Fit.AnswerTerms()
+	own := p.Fit.QuotesOwnLines() && p.Design.HasGroup()
+	for g, k := range terms {
+		if k < 0 {
+			continue
+		}
+		c := p.Fit.Term(k).Catcher
+		if rows := p.Design.Members(g); own {
+			if len(rows) >= 3 {
+				consider(c, rows, float64(len(rows)-2))
+			}
+			continue
+		}
+		consider(c, everyRow, float64(p.Fit.DF))
+	}
+	for a, ka := range terms {
+		for _, kb := range terms[a+1:] {
+			if ka >= 0 && kb >= 0 {
+				consider(p.Fit.Difference(ka, kb).Catcher, everyRow, float64(p.Fit.DF))
+			}
+		}
+	}
+	return worst
+}
+
+func (p *Pass) usedRows() []int {
+	rows := make([]int, p.Fit.N())
+	for i := range rows {
+		rows[i] = i
+	}
+	return rows
+}
+
+// leastSpread is the ratio of the largest to the smallest fitted SD that matters.
+const leastSpread = 1.5
+
+// spreadRatio is the largest over the smallest SD of a log-linear variance on
+// the model's regressors, fitted by Gaussian likelihood (Harvey 1976).
+func (p *Pass) spreadRatio() float64 {
+	v := numeric.LogLinearVariance(p.Fit.Residual, p.Fit.Leverage, p.Fit.RegressorColumns())
+	low, high := math.Inf(1), 0.0
+	for _, s := range v {
+		low, high = min(low, s), max(high, s)
+	}
+	return math.Sqrt(high / low)
+}
+
+func (p *Pass) spreadFloor() *Floor {
+	ratio := p.spreadRatio()
+	return &Floor{Effect: ratio, Least: leastSpread, Words: fmt.Sprintf("a spread ratio of %s (floor %s)", wording.Figure(ratio, 2), wording.Number(leastSpread))}
 }
 
 func constantVariance(p *Pass) (Outcome, error) {
@@ -51,14 +298,18 @@ func constantVariance(p *Pass) (Outcome, error) {
 	if o.Answer == Breach {
 		o.Message = "the scatter about the lines is uneven (" + p.strongest() + ")" + p.spreadWords()
 	}
-	o.Statistic = p.Joint.Tests[0].measure()
+	o.Statistic = p.Joint.First().measure()
 	nan := math.NaN()
-	o.Evidence = map[string]any{"breusch_pagan_lm": nan, "breusch_pagan_p": nan, "brown_forsythe_f": nan, "brown_forsythe_p": nan}
-	for _, t := range p.Joint.Tests {
-		if t.Name == "Brown-Forsythe F" {
-			o.Evidence["brown_forsythe_f"], o.Evidence["brown_forsythe_p"] = t.Value, t.P
-		} else {
-			o.Evidence["breusch_pagan_lm"], o.Evidence["breusch_pagan_p"] = t.Value, t.P
+	o.Evidence = map[string]any{
+		"breusch_pagan_lm": nan, "breusch_pagan_p": nan, "brown_forsythe_f": nan, "brown_forsythe_p": nan,
+		"spread_ratio": p.Joint.Chance.Floor.Effect,
+	}
+	for _, m := range p.Joint.Chance.Members {
+		switch m.Test.Name {
+		case koenkerName:
+			o.Evidence["breusch_pagan_lm"], o.Evidence["breusch_pagan_p"] = m.Test.Value, m.Test.P
+		case brownName:
+			o.Evidence["brown_forsythe_f"], o.Evidence["brown_forsythe_p"] = m.Test.Value, m.Test.P
 		}
 	}
 	return o, nil
@@ -68,26 +319,8 @@ func constantVariance(p *Pass) (Outcome, error) {
 // of the lower and the upper half of the rows.
 func (p *Pass) spreadWords() string {
 	d := p.Design
-	if t := p.Joint.Smallest(); t.Name == "Brown-Forsythe F" || d.X() == nil {
-		widest, narrowest := -1, -1
-		var sd []float64
-		for g := range d.Groups {
-			own := d.OfGroup(p.Fit.Residual, g)
-			sd = append(sd, rootMeanSquare(own))
-			if len(own) < 3 {
-				continue
-			}
-			if widest < 0 || sd[g] > sd[widest] {
-				widest = g
-			}
-			if narrowest < 0 || sd[g] < sd[narrowest] {
-				narrowest = g
-			}
-		}
-		if widest < 0 || widest == narrowest {
-			return ""
-		}
-		return fmt.Sprintf(": residual SD %s in %s, %s in %s", wording.Figure(sd[widest], 2), d.Groups[widest], wording.Figure(sd[narrowest], 2), d.Groups[narrowest])
+	if p.Joint.Strongest().Name == brownName || d.X() == nil {
+		return p.spreadOfGroups()
 	}
 	middle := numeric.Median(d.X())
 	var low, high []float64
@@ -103,6 +336,29 @@ func (p *Pass) spreadWords() string {
 	}
 	x := p.Columns.Predictors[0].Title()
 	return fmt.Sprintf(": residual SD %s below the middle of %s, %s above it", wording.Figure(rootMeanSquare(low), 2), x, wording.Figure(rootMeanSquare(high), 2))
+}
+
+func (p *Pass) spreadOfGroups() string {
+	d := p.Design
+	widest, narrowest := -1, -1
+	sd := make([]float64, len(d.Groups))
+	for g := range d.Groups {
+		own := d.OfGroup(p.Fit.Residual, g)
+		sd[g] = rootMeanSquare(own)
+		if len(own) < 3 {
+			continue
+		}
+		if widest < 0 || sd[g] > sd[widest] {
+			widest = g
+		}
+		if narrowest < 0 || sd[g] < sd[narrowest] {
+			narrowest = g
+		}
+	}
+	if widest < 0 || widest == narrowest {
+		return ""
+	}
+	return fmt.Sprintf(": residual SD %s in %s, %s in %s", wording.Figure(sd[widest], 2), d.Groups[widest], wording.Figure(sd[narrowest], 2), d.Groups[narrowest])
 }
 
 func rootMeanSquare(v []float64) float64 {

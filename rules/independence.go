@@ -1,9 +1,9 @@
 package rules
 
 import (
-	"cmp"
+	"fmt"
 	"math"
-	"slices"
+	"math/rand/v2"
 
 	"gonum.org/v1/gonum/floats"
 
@@ -22,115 +22,136 @@ var Independence = &Rule{
 		"Durbin and Watson's d (1950, Biometrika 37:409) is told beside them",
 	Limit:    jointLimit,
 	Needs:    NeedsScatter,
-	Remedies: []*remedy.Remedy{remedy.ModelOrder},
-	Tests:    independenceTests,
+	Remedies: []*remedy.Remedy{remedy.OrderTerm, remedy.SerialErrors},
+	Chance:   independenceChance,
 	Run:      independence,
 }
 
-// sequence lists the used rows that have an order, sorted by it, ties in file
-// order; and the neighbours, which with a subject lie within one subject.
-func (p *Pass) sequence() (rows []int, neighbours [][2]int) {
-	d := p.Design
-	for i := range d.N() {
-		if !math.IsNaN(d.Order[i]) && (d.Subject == nil || d.Subject[i] >= 0) {
-			rows = append(rows, i)
-		}
-	}
-	slices.SortStableFunc(rows, func(a, b int) int {
-		if d.Subject != nil {
-			if c := cmp.Compare(d.Subject[a], d.Subject[b]); c != 0 {
-				return c
-			}
-		}
-		return cmp.Compare(d.Order[a], d.Order[b])
-	})
-	for k := 1; k < len(rows); k++ {
-		a, b := rows[k-1], rows[k]
-		if d.Subject == nil || d.Subject[a] == d.Subject[b] {
-			neighbours = append(neighbours, [2]int{a, b})
-		}
-	}
-	return rows, neighbours
-}
-
-func independenceTests(p *Pass) ([]Test, string) {
+func independenceChance(p *Pass) (*Chance, string) {
 	if p.Design.Order == nil {
 		return nil, "no order is given; name its column with --order if the rows were taken one after another"
 	}
-	rows, neighbours := p.sequence()
-	if len(neighbours) < 3 {
-		return nil, "fewer than four rows have an order"
+	rows, neighbours := p.Design.Sequence()
+	if len(neighbours) < 3 || p.Fit.DF < 2 {
+		return nil, "too few rows have an order"
 	}
-	tests := []Test{p.lagTest(neighbours)}
-	if drift, ok := p.driftTest(rows); ok {
-		tests = append(tests, drift)
+	r1, mean := p.Fit.LagOne()
+	c := &Chance{Members: []Member{p.lagMember(neighbours, mean)}, Breach: func() Trouble { return p.serialBreach(rows) }}
+	effect := math.Abs(r1-mean) / leastLag
+	words := fmt.Sprintf("a lag-one correlation of %s (floor %s)", wording.Figure(r1-mean, 2), wording.Number(leastLag))
+	if drift, ok := p.drift(); ok {
+		c.Members = append(c.Members, drift.member(p))
+		rms := drift.rms(p)
+		effect = max(effect, rms/leastDrift)
+		words += fmt.Sprintf(" and a drift of %s SD (floor %s)", wording.Figure(rms, 2), wording.Number(leastDrift))
 	}
-	return tests, ""
+	c.Floor = &Floor{Effect: effect, Least: 1, Words: words}
+	return c, ""
 }
 
-// lagTest compares r1 = sum e_i e_{i-1} / RSS with its exact null mean in this
+const (
+	leastLag   = 0.1  // lag-one correlation that matters
+	leastDrift = 0.15 // root mean square of a drift, in SD, that matters
+	serialRho  = 0.4  // of the consequential breach
+)
+
+// lagMember compares r1 = sum e_i e_{i-1} / RSS with its exact null mean in this
 // design, -sum q_i . q_{i-1} / df with q_i the rows of Q.
-func (p *Pass) lagTest(neighbours [][2]int) Test {
-	r1, mean := p.lagOne(neighbours)
-	z := math.Abs(r1-mean) * math.Sqrt(float64(p.Fit.N()))
-	return Test{Name: "lag-one autocorrelation", Value: r1, P: numeric.NormalTwoSided(z)}
-}
-
-func (p *Pass) lagOne(neighbours [][2]int) (r1, mean float64) {
-	e, q := p.Fit.Residual, p.Fit.Basis.Q()
-	for _, pair := range neighbours {
-		r1 += e[pair[0]] * e[pair[1]]
-		for _, column := range q {
-			mean -= column[pair[0]] * column[pair[1]]
+func (p *Pass) lagMember(neighbours [][2]int, mean float64) Member {
+	root := math.Sqrt(float64(p.Fit.N()))
+	lag := func(e []float64, rss float64) float64 {
+		sum := 0.0
+		for _, pair := range neighbours {
+			sum += e[pair[0]] * e[pair[1]]
 		}
+		return sum / rss
 	}
-	return r1 / p.Fit.RSS, mean / float64(p.Fit.DF)
+	closed := func(distance float64) float64 { return numeric.NormalTwoSided(distance * root) }
+	r1 := lag(p.Fit.Residual, p.Fit.RSS)
+	return Member{
+		Test: Test{Name: "lag-one autocorrelation", Value: r1, P: closed(math.Abs(r1 - mean))},
+		New: func() func(*Sample) float64 {
+			return func(s *Sample) float64 { return math.Abs(lag(s.E, s.RSS) - mean) }
+		},
+		ClosedP: closed,
+	}
 }
 
-// driftTest is the exact t test of the rank in the order as a further column.
-// It is left out when less than 0.3 of the rank's length remains off the
+// driftColumn is the rank in the order, off the design.
+type driftColumn struct {
+	unit []float64
+	left float64 // share of its length that is left off the design
+}
+
+// drift is false when less than 0.3 of the rank's length remains off the
 // design: then the order is the predictor itself.
-func (p *Pass) driftTest(rows []int) (Test, bool) {
-	if p.Fit.DF < 2 {
-		return Test{}, false
-	}
-	rank := p.orderRank(rows)
+func (p *Pass) drift() (driftColumn, bool) {
+	rank := p.Fit.Transformed(p.Design.OrderRank())
 	rest := make([]float64, len(rank))
 	p.Fit.Basis.Residual(rest, rank)
-	length := floats.Norm(rest, 2)
-	if length < 0.3*floats.Norm(rank, 2) || length == 0 {
-		return Test{}, false
+	length, before := floats.Norm(rest, 2), floats.Norm(rank, 2)
+	if length == 0 || length < 0.3*before {
+		return driftColumn{}, false
 	}
-	along := floats.Dot(rest, p.Fit.Residual) / length
-	df := float64(p.Fit.DF - 1)
-	t := along / math.Sqrt((p.Fit.RSS-along*along)/df)
-	return Test{Name: "drift t", Value: t, DF: []float64{df}, P: numeric.StudentTwoSided(t, df)}, true
+	floats.Scale(1/length, rest)
+	return driftColumn{unit: rest, left: length / before}, true
 }
 
-// orderRank is the rank in the order about its mean, ties at their mean rank;
-// rows without an order are 0.
-func (p *Pass) orderRank(rows []int) []float64 {
-	order := p.Design.Order
-	sorted := slices.Clone(rows)
-	slices.SortStableFunc(sorted, func(a, b int) int { return cmp.Compare(order[a], order[b]) })
-	rank := make([]float64, p.Fit.N())
-	middle := float64(len(sorted)+1) / 2
-	for from := 0; from < len(sorted); {
-		to := from + 1
-		for to < len(sorted) && order[sorted[to]] == order[sorted[from]] {
-			to++
-		}
-		for k := from; k < to; k++ {
-			rank[sorted[k]] = float64(from+1+to)/2 - middle
-		}
-		from = to
+func (d driftColumn) member(p *Pass) Member {
+	df := float64(p.Fit.DF - 1)
+	closed := func(share float64) float64 { return numeric.StudentTwoSided(math.Sqrt(share*df/(1-share)), df) }
+	along := floats.Dot(d.unit, p.Fit.Residual)
+	t := scoreT(along, p.Fit.RSS, df)
+	return Member{
+		Test: Test{Name: driftName, Value: t, DF: []float64{df}, P: numeric.StudentTwoSided(t, df)},
+		New: func() func(*Sample) float64 {
+			return func(s *Sample) float64 {
+				v := floats.Dot(d.unit, s.E)
+				return v * v / s.RSS
+			}
+		},
+		ClosedP: closed,
 	}
-	return rank
+}
+
+const driftName = "drift t"
+
+// rms is the drift's own root mean square, in residual SD.
+func (d driftColumn) rms(p *Pass) float64 {
+	along := floats.Dot(d.unit, p.Fit.Residual)
+	s := p.Fit.SD
+	return math.Sqrt(max(0, along*along-s*s)/float64(p.Fit.N())) / (d.left * s)
+}
+
+// serialBreach draws a stationary first-order autoregression along the order,
+// within subjects where there are any.
+func (p *Pass) serialBreach(rows []int) Trouble {
+	fresh := make([]bool, len(rows))
+	for k := range rows {
+		fresh[k] = k == 0 || (p.Design.Subject != nil && p.Design.Subject[rows[k]] != p.Design.Subject[rows[k-1]])
+	}
+	step := math.Sqrt(1 - serialRho*serialRho)
+	return Trouble{
+		Short: "neighbours alike",
+		Words: fmt.Sprintf("neighbours correlated by %s", wording.Number(serialRho)),
+		New: func() func(*rand.Rand, []float64) {
+			return func(random *rand.Rand, z []float64) {
+				for i := range z {
+					z[i] = random.NormFloat64()
+				}
+				for k, i := range rows {
+					if !fresh[k] {
+						z[i] = serialRho*z[rows[k-1]] + step*z[i]
+					}
+				}
+			}
+		},
+	}
 }
 
 func independence(p *Pass) (Outcome, error) {
-	lag := p.Joint.Tests[0]
-	_, neighbours := p.sequence()
+	lag := p.Joint.First()
+	rows, neighbours := p.Design.Sequence()
 	dw := 0.0
 	for _, pair := range neighbours {
 		step := p.Fit.Residual[pair[1]] - p.Fit.Residual[pair[0]]
@@ -140,7 +161,7 @@ func independence(p *Pass) (Outcome, error) {
 	if lag.Value < 0 {
 		alarm = "rows that follow each other lie on opposite sides of their lines more often than chance puts them there"
 	}
-	if p.Joint.Smallest().Name == "drift t" {
+	if p.Joint.Strongest().Name == driftName {
 		alarm = "the residuals drift along the order"
 	}
 	o := judged(p.Joint, "", "neighbours in the order were not found to be alike, nor was a drift")
@@ -149,16 +170,11 @@ func independence(p *Pass) (Outcome, error) {
 	}
 	o.Statistic = lag.measure()
 	o.Evidence = map[string]any{"durbin_watson": dw / p.Fit.RSS, "lag1": lag.Value}
-	if len(p.Joint.Tests) > 1 {
-		o.Evidence["drift_p"] = p.Joint.Tests[1].P
+	if members := p.Joint.Chance.Members; len(members) > 1 {
+		o.Evidence["drift_p"] = members[1].Test.P
 	}
-	if missing := p.Fit.N() - len(p.withOrder()); missing > 0 {
+	if missing := p.Fit.N() - len(rows); missing > 0 {
 		o.Message += "; " + wording.Count(missing, "row") + " without an order left out"
 	}
 	return o, nil
-}
-
-func (p *Pass) withOrder() []int {
-	rows, _ := p.sequence()
-	return rows
 }

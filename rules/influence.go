@@ -3,6 +3,7 @@ package rules
 import (
 	"fmt"
 	"math"
+	"math/rand/v2"
 
 	"footing/rules/model"
 	"footing/rules/numeric"
@@ -20,8 +21,8 @@ var Influence = &Rule{
 		"Cook's distance (1977, Technometrics 19:15) is told beside it",
 	Limit:    jointLimit,
 	Needs:    NeedsScatter,
-	Remedies: []*remedy.Remedy{remedy.SetAside},
-	Tests:    influenceTests,
+	Remedies: []*remedy.Remedy{remedy.SetAside, remedy.RobustLine},
+	Chance:   influenceChance,
 	Run:      influence,
 }
 
@@ -44,37 +45,114 @@ func largestPull(d *model.Diagnostics) (pull, bool) {
 	return best, best.row >= 0
 }
 
-func influenceTests(p *Pass) ([]Test, string) {
+func influenceChance(p *Pass) (*Chance, string) {
 	best, ok := largestPull(p.Fit.Diagnostics())
 	if !ok {
 		return nil, "no slope, or too few rows to leave one out"
 	}
-	return []Test{{Name: "largest DFBETAS of a slope", Value: best.value, P: unionBound(p.Fit, best.value)}}, ""
+	reach := p.reach()
+	closed := func(t float64) float64 { return unionBound(p.Fit, reach, t) }
+	return &Chance{
+		Members: []Member{{
+			Test: Test{Name: "largest DFBETAS of a slope", Value: best.value, P: closed(best.value)},
+			New: func() func(*Sample) float64 {
+				return func(s *Sample) float64 {
+					largest := 0.0
+					for i, square := range s.Squares() {
+						if v := square * reach[i] * reach[i]; v > largest {
+							largest = v
+						}
+					}
+					return math.Sqrt(largest)
+				}
+			},
+			ClosedP: closed,
+		}},
+		Breach: func() Trouble { return p.pullBreach(closed) },
+		Floor:  &Floor{Effect: best.value, Least: leastPull, Words: fmt.Sprintf("a pull of %s standard errors (floor %s)", wording.Figure(best.value, 2), wording.Number(leastPull))},
+	}, ""
+}
+
+const (
+	leastPull = 0.25 // standard errors by which a row must move a slope to matter
+	pullShift = 2.0  // standard errors by which the breach moves it: its half-width
+)
+
+// reach is |w_gi| / sqrt(1-h_i), the largest over the slopes: a row's |DFBETAS|
+// is that times its externally studentized residual. It is 0 at leverage 1.
+func (p *Pass) reach() []float64 {
+	f := p.Fit
+	reach := make([]float64, f.N())
+	for _, w := range p.shares() {
+		for i, v := range w {
+			if f.Leverage[i] < 1 {
+				reach[i] = max(reach[i], math.Abs(v)/math.Sqrt(1-f.Leverage[i]))
+			}
+		}
+	}
+	return reach
+}
+
+// shares gives for each slope that exists the unit catcher w: w_i² is row i's
+// share of it.
+func (p *Pass) shares() [][]float64 {
+	var all [][]float64
+	for _, k := range p.Fit.AnswerTerms() {
+		if k < 0 {
+			continue
+		}
+		c := p.Fit.Term(k)
+		w := make([]float64, len(c.Catcher))
+		for i, v := range c.Catcher {
+			w[i] = v / c.Length
+		}
+		all = append(all, w)
+	}
+	return all
 }
 
 // unionBound is the chance that any row of a sound table reaches a DFBETAS of
 // t, bounded by the sum over the rows of the chance that its externally
-// studentized residual reaches t/a, a = max_g |w_gi| / sqrt(1-h_i).
-func unionBound(f *model.Fit, t float64) float64 {
-	reach := make([]float64, f.N())
-	for _, k := range f.AnswerTerms() {
-		if k < 0 {
-			continue
-		}
-		c := f.Term(k)
-		for i, v := range c.Catcher {
-			reach[i] = max(reach[i], math.Abs(v)/c.Length)
-		}
-	}
+// studentized residual reaches t over the row's reach. It holds at every n.
+func unionBound(f *model.Fit, reach []float64, t float64) float64 {
 	total := 0.0
-	for i, w := range reach {
-		h := f.Leverage[i]
-		if h >= 1 || w == 0 {
-			continue
+	for _, a := range reach {
+		if a > 0 {
+			total += numeric.StudentTwoSided(t/a, float64(f.DF-1))
 		}
-		total += numeric.StudentTwoSided(t*math.Sqrt(1-h)/w, float64(f.DF-1))
 	}
 	return min(1, total)
+}
+
+// pullBreach moves the row with the largest share of a slope so far that it
+// shifts that slope by two of its standard errors.
+func (p *Pass) pullBreach(closed func(float64) float64) Trouble {
+	row, share := 0, 0.0
+	for _, w := range p.shares() {
+		for i, v := range w {
+			if p.Fit.Leverage[i] < 1 && math.Abs(v) > share*(1+1e-12) {
+				row, share = i, math.Abs(v)
+			}
+		}
+	}
+	h := p.Fit.Leverage[row]
+	df := float64(p.Fit.DF - 1)
+	return Trouble{
+		Short: "a row that pulls a slope",
+		Words: "one row that pulls a slope by its whole half-width",
+		New: func() func(*rand.Rand, []float64) {
+			return func(random *rand.Rand, z []float64) {
+				for i := range z {
+					z[i] = random.NormFloat64()
+				}
+				z[row] += either(random, pullShift/share)
+			}
+		},
+		ClosedPower: func(critical float64) float64 {
+			point := criticalValue(closed, critical) * math.Sqrt(1-h) / share
+			return numeric.NoncentralTTwoSided(point, df, pullShift*math.Sqrt(1-h)/share)
+		},
+	}
 }
 
 func influence(p *Pass) (Outcome, error) {
@@ -84,16 +162,35 @@ func influence(p *Pass) (Outcome, error) {
 	o := judged(p.Joint,
 		fmt.Sprintf("row %d moves the slope%s by %s standard errors", at, ofGroup(p, best.group), wording.Figure(best.value, 2)),
 		"no row pulls a slope further than chance lets one")
-	o.Statistic = p.Joint.Tests[0].measure()
+	o.Statistic = p.Joint.First().measure()
 	cook, cookRow := largestCook(d.Cook)
 	o.Evidence = map[string]any{"largest_dfbetas": best.value, "row": at, "largest_cook": cook}
 	if cookRow >= 0 {
 		o.Evidence["largest_cook_row"] = p.Table.Row(p.Design.Rows[cookRow])
 	}
 	o.Target.Rows = []int{best.row}
+	if o.Answer == Breach {
+		o.Target.Rows = p.beyond(p.pulls(), p.Joint.Point[0])
+	}
 	o.Touches = p.ofRows(o.Target.Rows)
-	o.Where = []Place{p.row(best.row)}
+	for _, i := range o.Target.Rows {
+		o.Where = append(o.Where, p.row(i))
+	}
 	return o, nil
+}
+
+// pulls is each row's largest |DFBETAS| over the slopes.
+func (p *Pass) pulls() []float64 {
+	pulls := make([]float64, p.Fit.N())
+	for i := range pulls {
+		pulls[i] = math.NaN()
+		for _, v := range p.Fit.Diagnostics().DFBETAS {
+			if b := math.Abs(v[i]); !(b <= pulls[i]) {
+				pulls[i] = b
+			}
+		}
+	}
+	return pulls
 }
 
 func largestCook(cook []float64) (float64, int) {

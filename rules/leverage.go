@@ -42,7 +42,7 @@ func leverage(p *Pass) (Outcome, error) {
 	carried := carriers(f)
 	evidence := map[string]any{
 		"largest_leverage": f.Leverage[largest], "row": p.Table.Row(p.Design.Rows[largest]),
-		"rows_above_2p_over_n": high,
+		"rows_above_2p_over_n": high, "largest_share": p.largestShares(),
 	}
 	var o Outcome
 	switch {
@@ -64,6 +64,28 @@ func leverage(p *Pass) (Outcome, error) {
 	o.Statistic = figure("largest leverage", f.Leverage[largest])
 	o.Evidence = evidence
 	return o, nil
+}
+
+// largestShares is, per slope, the largest share of it that one row carries.
+func (p *Pass) largestShares() map[string]any {
+	all := map[string]any{}
+	terms := p.Fit.AnswerTerms()
+	for g, k := range terms {
+		if k < 0 {
+			continue
+		}
+		c := p.Fit.Term(k)
+		largest := 0.0
+		for _, v := range c.Catcher {
+			largest = max(largest, v*v/(c.Length*c.Length))
+		}
+		name := "slope"
+		if len(terms) > 1 {
+			name = p.Design.Groups[g]
+		}
+		all[name] = largest
+	}
+	return all
 }
 
 // standsAlone tells of rows that the fit must pass through, and which slopes
@@ -93,7 +115,7 @@ func (p *Pass) standsAlone(rows []int) Outcome {
 		o.Limits = append(o.Limits, Limit{Of: &q, Sentence: fmt.Sprintf(
 			"row %d alone decides it, and no other row can check that.", at)})
 		if p.Answers.Difference != nil && c.group >= 0 {
-			o.Touches = append(o.Touches, Question{Difference: true})
+			o.Limits = append(o.Limits, Limit{Of: &Question{Difference: true}, Sentence: fmt.Sprintf("row %d alone decides the slope%s.", at, ofGroup(p, c.group))})
 		}
 	}
 	return o

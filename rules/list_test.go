@@ -32,7 +32,7 @@ func TestEveryRuleIsComplete(t *testing.T) {
 		if len(r.Remedies) == 0 && !r.OnlyLimits {
 			t.Errorf("%s offers no remedy", r.Name)
 		}
-		if r.Tests != nil && r.Needs != NeedsScatter {
+		if r.Chance != nil && r.Needs != NeedsScatter {
 			t.Errorf("%s tests residuals and must need scatter", r.Name)
 		}
 		for _, remedy := range r.Remedies {

@@ -1,9 +1,12 @@
 package rules
 
 import (
+	"cmp"
 	"fmt"
 	"math"
+	"math/rand/v2"
 	"slices"
+	"strings"
 
 	"footing/rules/numeric"
 	"footing/rules/remedy"
@@ -16,15 +19,22 @@ var Outliers = &Rule{
 	Family:   OfModel,
 	Asks:     "Does a row lie further off its line than chance would put it?",
 	Why:      "Such a row is often a slip of the pen, and it can move a slope and widen every interval.",
-	Method:   "largest externally studentized residual, t distribution with Bonferroni's factor for the number of rows (Cook and Weisberg 1982, Residuals and Influence in Regression)",
+	Method:   "largest externally studentized residual (Cook and Weisberg 1982, Residuals and Influence in Regression); Bonferroni's p is told beside it",
 	Limit:    jointLimit,
 	Needs:    NeedsScatter,
-	Remedies: []*remedy.Remedy{remedy.SetAside},
-	Tests:    outlierTests,
+	Remedies: []*remedy.Remedy{remedy.SetAside, remedy.RobustLine},
+	Chance:   outliersChance,
 	Run:      outliers,
 }
 
-func outlierTests(p *Pass) ([]Test, string) {
+// wildShift is how far off, in SD, a row is moved in the consequential breach;
+// large tables hold rows further out by chance.
+const (
+	wildShift      = 5.0
+	wildShiftLarge = 8.0
+)
+
+func outliersChance(p *Pass) (*Chance, string) {
 	d := p.Fit.Diagnostics()
 	row, defined := d.LargestExternal()
 	if row < 0 {
@@ -32,22 +42,98 @@ func outlierTests(p *Pass) ([]Test, string) {
 	}
 	df := float64(p.Fit.DF - 1)
 	t := math.Abs(d.External[row])
-	return []Test{{
-		Name: "largest studentized residual", Value: t, DF: []float64{df},
-		P: min(1, float64(defined)*numeric.StudentTwoSided(t, df)),
-	}}, ""
+	closed := func(t float64) float64 { return min(1, float64(defined)*numeric.StudentTwoSided(t, df)) }
+	c := &Chance{Members: []Member{{
+		Test: Test{Name: "largest studentized residual", Value: t, DF: []float64{df}, P: closed(t)},
+		New: func() func(*Sample) float64 {
+			return func(s *Sample) float64 { return math.Sqrt(slices.Max(s.Squares())) }
+		},
+		ClosedP: closed,
+	}}}
+	shift := wildShift
+	if p.Fit.N() > LargestSimulated {
+		shift = wildShiftLarge
+		c.Floor = p.wildFloor(row)
+	}
+	c.Breach = func() Trouble { return p.wildBreach(shift, closed) }
+	return c, ""
+}
+
+// wildBreach moves one row, drawn evenly, up or down.
+func (p *Pass) wildBreach(shift float64, closed func(float64) float64) Trouble {
+	var rows []int
+	var free []float64
+	for i, h := range p.Fit.Leverage {
+		if h < 1 {
+			rows = append(rows, i)
+			free = append(free, math.Sqrt(1-h))
+		}
+	}
+	df := float64(p.Fit.DF - 1)
+	return Trouble{
+		Short: "a wild row",
+		Words: fmt.Sprintf("a row %s SD off its line", wording.Number(shift)),
+		New: func() func(*rand.Rand, []float64) {
+			return func(random *rand.Rand, z []float64) {
+				for i := range z {
+					z[i] = random.NormFloat64()
+				}
+				z[rows[random.IntN(len(rows))]] += either(random, shift)
+			}
+		},
+		ClosedPower: func(critical float64) float64 {
+			return numeric.NoncentralTTwoSided(criticalValue(closed, critical), df, shift*numeric.Median(free))
+		},
+	}
+}
+
+func either(random *rand.Rand, v float64) float64 {
+	if random.IntN(2) == 0 {
+		return -v
+	}
+	return v
+}
+
+// criticalValue is the value whose p is the given one, by bisection; p falls as
+// the value rises.
+func criticalValue(p func(float64) float64, at float64) float64 {
+	low, high := 0.0, 1e3
+	for range 60 {
+		middle := (low + high) / 2
+		if p(middle) > at {
+			low = middle
+		} else {
+			high = middle
+		}
+	}
+	return high
+}
+
+// wildFloor silences, in large tables only, a row that is neither very far out
+// nor pulls a slope.
+func (p *Pass) wildFloor(row int) *Floor {
+	d := p.Fit.Diagnostics()
+	pull := 0.0
+	for _, v := range d.DFBETAS {
+		pull = max(pull, math.Abs(v[row]))
+	}
+	t := math.Abs(d.External[row])
+	return &Floor{
+		Effect: max(t/wildShiftLarge, pull/0.1), Least: 1,
+		Words: fmt.Sprintf("a row %s times the scatter off its line, as slightly long tails bring (floor %s)", wording.Figure(t, 2), wording.Number(wildShiftLarge)),
+	}
 }
 
 func outliers(p *Pass) (Outcome, error) {
 	d := p.Fit.Diagnostics()
-	row, defined := d.LargestExternal()
-	t := p.Joint.Tests[0]
+	row, _ := d.LargestExternal()
+	t := p.Joint.First()
 	o := judged(p.Joint, "", "no row lies further off its line than chance puts one")
 	o.Statistic = t.measure()
 	o.Evidence = map[string]any{"largest_studentized": d.External[row], "bonferroni_p": t.P, "row": p.Table.Row(p.Design.Rows[row])}
 	flagged := []int{row}
 	if o.Answer == Breach {
-		flagged = p.wild(d.External, defined)
+		flagged = p.beyond(d.External, p.Joint.Point[0])
 		o.Message = p.wildWords(flagged, d.External)
 	}
 	for _, i := range flagged {
@@ -58,34 +144,29 @@ func outliers(p *Pass) (Outcome, error) {
 	return o, nil
 }
 
-// wild lists the rows whose own Bonferroni p is at most the rate of false
-// alarms, the worst first: at least one, at most a twentieth of all.
-func (p *Pass) wild(external []float64, defined int) []int {
+// beyond lists the rows whose value reaches the point that 5 % of sound tables
+// reach, the worst first: at least one, at most a twentieth of all.
+func (p *Pass) beyond(values []float64, point float64) []int {
 	var rows []int
-	df := float64(p.Fit.DF - 1)
-	for i, t := range external {
-		if !math.IsNaN(t) && float64(defined)*numeric.StudentTwoSided(t, df) <= p.Settings.FalseAlarm {
+	worst := -1
+	for i, v := range values {
+		if math.IsNaN(v) {
+			continue
+		}
+		if worst < 0 || math.Abs(v) > math.Abs(values[worst]) {
+			worst = i
+		}
+		if math.Abs(v) >= point {
 			rows = append(rows, i)
 		}
 	}
+	if len(rows) == 0 {
+		return []int{worst}
+	}
 	slices.SortStableFunc(rows, func(a, b int) int {
-		return compareDescending(math.Abs(external[a]), math.Abs(external[b]))
+		return cmp.Compare(math.Abs(values[b]), math.Abs(values[a]))
 	})
-	most := max(1, p.Fit.N()/20)
-	if len(rows) > most {
-		rows = rows[:most]
-	}
-	return rows
-}
-
-func compareDescending(a, b float64) int {
-	switch {
-	case a > b:
-		return -1
-	case a < b:
-		return 1
-	}
-	return 0
+	return rows[:min(len(rows), max(1, p.Fit.N()/20))]
 }
 
 func (p *Pass) wildWords(rows []int, external []float64) string {
@@ -103,7 +184,7 @@ func (p *Pass) wildWords(rows []int, external []float64) string {
 		}
 		said = append(said, at)
 	}
-	return wording.Some(said, 3)
+	return strings.Join(said, "; ")
 }
 
 // inUnits writes a value of the response with its unit.

@@ -16,10 +16,10 @@ var Overlap = &Rule{
 	Asks:     "Were the groups measured over a common range of the predictor?",
 	Why:      "Where they were not, two slopes may be two parts of one curve.",
 	Method:   "range of the predictor that all groups cover, and the share of rows inside it",
-	Limit:    "two groups without a common range are thin; no chance is involved",
+	Limit:    "two groups without a common range are thin; a breach when a clear difference goes once one curve through all groups is allowed, and that curve is clear",
 	Needs:    NeedsFit,
 	Bears:    OnlyDifference,
-	Remedies: []*remedy.Remedy{remedy.WidenRange},
+	Remedies: []*remedy.Remedy{remedy.CommonCurve},
 	Run:      overlap,
 }
 
@@ -43,15 +43,34 @@ func overlap(p *Pass) (Outcome, error) {
 	}
 	for a := range d.Groups {
 		for b := a + 1; b < len(d.Groups); b++ {
-			if math.Max(low[a], low[b]) > math.Min(high[a], high[b]) {
+			if !d.CommonSlope && math.Max(low[a], low[b]) > math.Min(high[a], high[b]) {
 				o = cannotTell(fmt.Sprintf("%s and %s were measured over different ranges of %s: their slopes may be two parts of one curve", d.Groups[a], d.Groups[b], name))
 				o.Touches = []Question{{Difference: true}}
 			}
 		}
 	}
+	if share < 0.5 && !d.CommonSlope && p.curveInstead() {
+		o.IfChanges = Breach
+		o.IfChangesMessage = fmt.Sprintf("different slopes or one curve: with %s of the rows in the range of %s that the groups share, these rows cannot say", wording.Percent(share), name)
+	}
 	o.Statistic = figure("share of rows in the common range", share)
 	o.Evidence = map[string]any{"share_inside": share}
 	return o, nil
+}
+
+// curveInstead reports whether a difference is shown and one bend over all rows
+// would be clear as well.
+func (p *Pass) curveInstead() bool {
+	c := p.Answers.Difference
+	alpha := 1 - p.Settings.Confidence
+	if c == nil || !p.Fit.HasScatter() || !(c.P < alpha) {
+		return false
+	}
+	x := centred(p.Design.X())
+	for i, v := range x {
+		x[i] = v * v
+	}
+	return p.Fit.Added(x).P < alpha
 }
 
 func inside(x []float64, from, to float64) float64 {

@@ -46,6 +46,11 @@ func kelp(n int, seed uint64) *sheet {
 	return s
 }
 
+func testSettings() Settings {
+	nan := math.NaN()
+	return Settings{Confidence: 0.95, FalseAlarm: 0.05, SmallestDifference: nan, StatedSlope: nan, PredictorError: nan, Seed: 1}
+}
+
 var kelpRoles = model.Roles{Response: "growth", Predictors: []string{"temperature"}, Group: "site"}
 
 // passOf reads a table and fits the model of the roles; no roles screen it.
@@ -61,7 +66,7 @@ func passOf(t *testing.T, s *sheet, roles model.Roles, missing ...string) *Pass 
 // passOn fits the model of the roles to a table.
 func passOn(t *testing.T, table *readers.Table, roles model.Roles) *Pass {
 	t.Helper()
-	p := &Pass{Table: table, Settings: Settings{Confidence: 0.95, FalseAlarm: 0.05, SmallestDifference: math.NaN()}}
+	p := &Pass{Table: table, Settings: testSettings()}
 	if !roles.Named() {
 		return p
 	}
@@ -82,18 +87,26 @@ func passOn(t *testing.T, table *readers.Table, roles model.Roles) *Pass {
 	return p
 }
 
-// ask runs a rule; one with tests is judged alone at its own rate.
+// ask runs a rule; one whose alarm could be chance is judged alone, by the
+// textbook p of its tests and Bonferroni.
 func ask(t *testing.T, r *Rule, p *Pass) Outcome {
 	t.Helper()
-	if r.Tests != nil {
-		tests, reason := r.Tests(p)
-		if len(tests) == 0 {
+	if r.Chance != nil {
+		chance, reason := r.Chance(p)
+		if chance == nil {
 			return notAsked(reason)
 		}
-		j := &Joint{Tests: tests, Asked: true}
-		j.P = min(1, float64(len(tests))*j.Smallest().P)
+		j := &Joint{Chance: chance, Asked: true}
+		for m, member := range chance.Members {
+			j.Point = append(j.Point, math.Inf(1))
+			if member.Test.P < chance.Members[j.Strong].Test.P {
+				j.Strong = m
+			}
+		}
+		j.P = min(1, float64(len(chance.Members))*j.Strongest().P)
 		j.PJoint = j.P
-		j.Alarm = j.P <= p.Settings.FalseAlarm
+		j.BelowFloor = j.P <= p.Settings.FalseAlarm && chance.Floor.Below()
+		j.Alarm = j.P <= p.Settings.FalseAlarm && !j.BelowFloor
 		own := *p
 		own.Joint = j
 		p = &own

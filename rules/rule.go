@@ -61,10 +61,14 @@ type Rule struct {
 	// they are tried.
 	Remedies []*remedy.Remedy
 
-	// Tests is given by the rules whose alarms could be chance: they are held
-	// to one joint rate of false alarms. It returns no tests and the reason
-	// when the rule is not asked of this design.
-	Tests func(*Pass) (tests []Test, reason string)
+	// AlwaysTry marks a rule whose remedies are tried without a breach too, since
+	// their answers are the ones to quote.
+	AlwaysTry bool
+
+	// Chance is given by the rules whose alarms could be chance: they are held to
+	// one joint rate of false alarms. It gives nil and the reason when the rule is
+	// not asked of this design.
+	Chance func(*Pass) (*Chance, string)
 
 	Run func(*Pass) (Outcome, error)
 }
@@ -74,6 +78,10 @@ type Settings struct {
 	Confidence         float64 // of every interval, in (0, 1)
 	FalseAlarm         float64 // joint rate for the rules with tests, in (0, 1)
 	SmallestDifference float64 // difference of slopes that matters; NaN when not stated
+	StatedSlope        float64 // slope to compare with; NaN when none is stated
+	PredictorError     float64 // the predictor's own SD of measurement; NaN when not declared
+	Seed               uint64
+	Replicates         int // of the simulated null; 0 for as many as the size of the table asks for
 }
 
 // Pass is all that a rule sees. It must not change any of it.
@@ -98,8 +106,7 @@ func (p *Pass) Asked() []*readers.Column {
 	return p.Columns.Used()
 }
 
-// Test is one test statistic of a rule, large when the assumption fails, with
-// its p-value.
+// Test is one test statistic in its usual scale, with its textbook p-value.
 type Test struct {
 	Name  string
 	Value float64
@@ -107,26 +114,31 @@ type Test struct {
 	P     float64
 }
 
-// Joint is what the joint judgement says of a rule's tests.
+// Joint is what the joint judgement says of a rule.
 type Joint struct {
-	Tests  []Test
-	Asked  bool
-	Reason string  // why not asked
-	P      float64 // of the rule, over its tests
-	PJoint float64 // held together over all rules with tests
-	Alarm  bool
+	Asked      bool
+	Reason     string // why not asked
+	Chance     *Chance
+	Strong     int       // the member with the smallest p
+	P          float64   // of the rule, over its members
+	PJoint     float64   // held together over all rules with members
+	Alarm      bool      // PJoint is at most the rate of false alarms, and the effect passes its floor
+	Trouble    *Trouble  // the consequential breach whose power is told; nil when it is not
+	Point      []float64 // per member the value that 5 % of sound tables reach; NaN where not simulated
+	Power      float64   // chance to have caught the consequential breach here; NaN when not computed
+	AnyPower   float64   // chance that any rule would have alarmed at it
+	BelowFloor bool      // PJoint is small, and the effect does not matter
+	Closed     bool      // p from formulas, not from simulation
 }
 
-// Smallest is the test with the smallest p-value, the first at a tie.
-func (j *Joint) Smallest() Test {
-	best := j.Tests[0]
-	for _, t := range j.Tests[1:] {
-		if t.P < best.P {
-			best = t
-		}
-	}
-	return best
-}
+// Detectable reports whether there would be an alarm but for the floor.
+func (j *Joint) Detectable() bool { return !j.Alarm && j.BelowFloor }
+
+// Strongest is the observed test of the member with the smallest p.
+func (j *Joint) Strongest() Test { return j.Chance.Members[j.Strong].Test }
+
+// First is the observed test that the report names.
+func (j *Joint) First() Test { return j.Chance.Members[0].Test }
 
 // Answer is what a rule says of its assumption.
 type Answer int
@@ -142,16 +154,19 @@ const (
 
 // Outcome is what a rule returns.
 type Outcome struct {
-	Answer    Answer
-	Message   string // one or two sentences; for NotAsked the reason
-	Statistic *Measure
-	Evidence  map[string]any // figures beside the statistic, by their contract names
-	Where     []Place
-	Target    remedy.Target // what the remedies act on
-	Advice    string        // what to do, where it depends on this table; else the remedies' own text
-	Denies    []Question    // answers that cannot be given at all: with a breach, a stop
-	Limits    []Limit       // what may not be quoted whatever the state
-	Touches   []Question    // answers that need a caution; nil: all that the rule bears on
+	Answer           Answer
+	Message          string // one or two sentences; for NotAsked the reason
+	Statistic        *Measure
+	Evidence         map[string]any // figures beside the statistic, by their contract names
+	Where            []Place
+	Target           remedy.Target   // what the remedies act on
+	Variants         []remedy.Target // further targets on which the remedies are tried too
+	IfChanges        Answer          // the answer in place of Answer when a remedy changes an answer; NoAnswer for no such
+	IfChangesMessage string          // and its message
+	Advice           string          // what to do, where it depends on this table; else the remedies' own text
+	Denies           []Question      // answers that cannot be given at all: with a breach, a stop
+	Limits           []Limit         // what may not be quoted whatever the state
+	Touches          []Question      // answers that need a caution; nil: all that the rule bears on
 }
 
 // Measure is a statistic with its degrees of freedom and p-value; P is NaN
@@ -191,10 +206,14 @@ func breach(message string) Outcome     { return Outcome{Answer: Breach, Message
 func cannotTell(message string) Outcome { return Outcome{Answer: CannotTell, Message: message} }
 func notAsked(reason string) Outcome    { return Outcome{Answer: NotAsked, Message: reason} }
 
-// judged turns a joint alarm into a breach and its absence into sound.
+// judged turns a joint alarm into a breach and its absence into sound; an alarm
+// under the floor is sound and says so.
 func judged(j *Joint, alarm, quiet string) Outcome {
-	if j.Alarm {
+	switch {
+	case j.Alarm:
 		return breach(alarm)
+	case j.Detectable():
+		return sound("detectable, but below what matters: " + j.Chance.Floor.Words)
 	}
 	return sound(quiet)
 }

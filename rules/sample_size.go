@@ -69,10 +69,33 @@ func (p *Pass) sizeOfFit() Outcome {
 	if o, lacking := p.lackingIntervals(); lacking {
 		return o
 	}
+	if o, short := p.shortOfDifference(); short {
+		return o
+	}
 	if f.DF < 5 {
 		return cannotTell(fmt.Sprintf("only %s beyond the %d that fix the lines: little that is wrong could show", wording.Count(f.DF, "row"), f.P()))
 	}
 	return sound(fmt.Sprintf("%s used, %d beyond those that fix the lines", wording.Count(f.N(), "row"), f.DF))
+}
+
+// shortOfDifference tells when the difference that matters would be found less
+// than half the time.
+func (p *Pass) shortOfDifference() (Outcome, bool) {
+	d, c := p.Settings.SmallestDifference, p.Answers.Difference
+	if math.IsNaN(d) || c == nil {
+		return Outcome{}, false
+	}
+	largest := 0.0
+	for _, pair := range c.Pairs {
+		largest = max(largest, pair.SE)
+	}
+	power := numeric.NoncentralTTwoSided(p.Fit.CriticalPair(p.Settings.Confidence), float64(p.Fit.DF), d/largest)
+	if power >= 0.5 {
+		return Outcome{}, false
+	}
+	o := cannotTell(fmt.Sprintf("a difference of %s, the smallest that matters, would be found in only %s of tables like this one", wording.Number(d), wording.Percent(power)))
+	o.Touches = []Question{{Difference: true}}
+	return o, true
 }
 
 // lackingSlopes tells of groups in which no slope can be estimated.

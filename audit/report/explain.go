@@ -57,10 +57,13 @@ func Rule(w io.Writer, r *rules.Rule) error {
 			lead = "To do    "
 		}
 		text := remedy.Name + ": " + remedy.Do
+		if remedy.Source != "" {
+			text += " (" + remedy.Source + ")"
+		}
 		if remedy.CanBeTried() {
 			text += " (tried on the rows at hand)"
 		}
-		p.say(lead, plain, wording.Sentence(text))
+		p.say(lead, plain, wording.Stop(text))
 	}
 	_, err := w.Write(p.buffer.Bytes())
 	return err

@@ -217,9 +217,8 @@ func writeSuggestion(p *page, r *audit.Result) {
 
 func writeFindings(p *page, r *audit.Result, o TextOptions) {
 	shown := false
-	for _, f := range r.Findings {
-		open := f.State == audit.Stop || f.State == audit.Warn || f.State == audit.Thin
-		if !open && !o.Verbose {
+	for k, f := range r.Findings {
+		if !isOpen(f) && !o.Verbose {
 			continue
 		}
 		if !shown {
@@ -231,36 +230,77 @@ func writeFindings(p *page, r *audit.Result, o TextOptions) {
 			p.say(title, strong, "")
 			shown = true
 		}
-		writeFinding(p, f, o, open)
+		if f.ConsequenceOf != nil && !o.Verbose {
+			continue // told in one line under its root
+		}
+		writeFinding(p, f, o)
+		if !o.Verbose {
+			writeConsequences(p, f, r.Findings[k+1:])
+		}
 	}
 }
 
-func writeFinding(p *page, f audit.Finding, o TextOptions, open bool) {
+// isOpen tells findings that ask for a decision; a pass that is thin only for
+// want of rows is told with the verdict.
+func isOpen(f audit.Finding) bool {
+	return f.State == audit.Stop || f.State == audit.Warn || (f.State == audit.Thin && !f.ByPower)
+}
+
+// margin is the indent of what is said below a finding.
+const margin = "         "
+
+// writeConsequences tells in one line which findings follow from this one.
+func writeConsequences(p *page, root audit.Finding, rest []audit.Finding) {
+	var names []string
+	for _, f := range rest {
+		if f.ConsequenceOf == nil || *f.ConsequenceOf != root.Rule {
+			break
+		}
+		names = append(names, f.Rule)
+	}
+	if len(names) > 0 {
+		p.say(margin+"from it follow: ", faint, wording.List(names)+".")
+	}
+}
+
+func writeFinding(p *page, f audit.Finding, o TextOptions) {
 	sign, i := stateSign(f.State)
 	lead := fmt.Sprintf("  %s %-4s ", sign, f.State)
-	indent := 2
+	indent := ""
 	if f.ConsequenceOf != nil {
-		lead = "  " + lead
-		indent = 4
+		indent = "  "
 	}
 	text := f.Rule + ": " + f.Message
 	if f.ConsequenceOf != nil {
 		text += " This follows from " + *f.ConsequenceOf + "."
 	}
-	p.sayIndented(lead, i, indent+7, text)
-	margin := strings.Repeat(" ", indent+7)
-	if where := whereWords(f, o); where != "" && open {
-		p.say(margin+"where: ", faint, where)
-	}
-	if !open {
+	p.sayIndented(indent+lead, i, len(indent+margin), text)
+	if !isOpen(f) {
 		return
 	}
-	for _, remedy := range f.Remedies {
-		p.say(margin+"do: ", faint, remedy.Text)
-		if remedy.Tried {
-			p.say(margin+"tried: ", faint, triedWords(remedy))
+	if where := whereWords(f, o); where != "" {
+		p.say(indent+margin+"where: ", faint, where)
+	}
+	for k, remedy := range f.Remedies {
+		switch {
+		case remedy.Tried:
+			p.say(indent+margin+"do: ", faint, remedy.Text)
+			p.say(indent+margin+"tried: ", faint, triedWords(remedy))
+		case o.Verbose && remedy.Why != nil:
+			p.say(indent+margin+"do: ", faint, remedy.Text+" (Not tried: "+*remedy.Why+".)")
+		case k == 0 && !anyTried(f.Remedies):
+			p.say(indent+margin+"do: ", faint, remedy.Text)
 		}
 	}
+}
+
+func anyTried(remedies []audit.Remedy) bool {
+	for _, r := range remedies {
+		if r.Tried {
+			return true
+		}
+	}
+	return false
 }
 
 func whereWords(f audit.Finding, o TextOptions) string {
@@ -330,16 +370,30 @@ func writeCounts(p *page, r *audit.Result, o TextOptions) {
 		text += fmt.Sprintf(", %d did not apply", skipped)
 	}
 	p.say("", plain, text+".")
-	if c := r.Calibration; c != nil && len(c.Rules) > 0 {
-		p.say("", plain, fmt.Sprintf("Sound tables alarm in at most %s of cases (%s's method over %s).",
-			wording.Percent(float64(c.FalseAlarm)), c.Method, wording.Count(len(c.Rules), "check")))
-		if o.Verbose {
-			p.say("  ", plain, "They are "+wording.List(c.Rules)+".")
-		}
-	}
+	writeCalibration(p, r.Calibration, o)
 	if !o.Verbose && o.Command != "" {
 		p.sayIndented("All checks: ", faint, 2, o.Command+" --verbose")
 	}
+}
+
+// writeCalibration says how often sound tables alarm, and what the audit as a
+// whole could have caught.
+func writeCalibration(p *page, c *audit.Calibration, o TextOptions) {
+	if c == nil || len(c.Rules) == 0 {
+		return
+	}
+	if c.CaughtLeast.Defined() {
+		p.say("", plain, fmt.Sprintf("A trouble worth acting on would have been caught %s to %s times in 100.",
+			wording.To(100*float64(c.CaughtLeast), 0), wording.To(100*float64(c.CaughtMost), 0)))
+	}
+	if !o.Verbose {
+		return
+	}
+	how := fmt.Sprintf("by %d simulated tables of this design, seed %d", c.Replicates, c.Seed)
+	if c.Method == "formulas" {
+		how = "by formulas, since the table is large"
+	}
+	p.say("", plain, fmt.Sprintf("Sound tables alarm in at most %s of cases (%s; over %s).", wording.Percent(float64(c.FalseAlarm)), how, wording.List(c.Rules)))
 }
 
 func gradeInk(g audit.Grade) ink {

@@ -26,6 +26,11 @@ type auditFlags struct {
 
 	confidence float64
 	falseAlarm float64
+	smallest   float64
+	stated     float64
+	xError     float64
+	seed       uint64
+	replicates int
 
 	format  string
 	perRow  bool
@@ -92,6 +97,12 @@ func (f *auditFlags) add(cmd *cobra.Command) {
 	flags.Float64Var(&f.confidence, "confidence", 0.95, "confidence of intervals")
 	flags.Float64Var(&f.falseAlarm, "false-alarm", 0.05, "share of sound tables in which the model rules together may alarm")
 
+	flags.Float64Var(&f.smallest, "smallest-difference", 0, "difference of slopes that matters")
+	flags.Float64Var(&f.stated, "stated-slope", 0, "slope to compare with, such as 1")
+	flags.Float64Var(&f.xError, "predictor-error", 0, "the predictor's own standard deviation of measurement")
+	flags.Uint64Var(&f.seed, "seed", 1, "seed of what is simulated")
+	flags.IntVar(&f.replicates, "replicates", 0, "tables simulated for the p-values (default: by the size of the table)")
+
 	flags.StringVar(&f.format, "format", "text", "form of the report: text or json")
 	flags.BoolVar(&f.perRow, "per-row", false, "add row diagnostics to JSON")
 	flags.StringVar(&f.color, "color", "auto", "colour: auto, always or never")
@@ -114,7 +125,9 @@ func (f *auditFlags) run(cmd *cobra.Command, file string) error {
 	r, err := audit.Table(t, audit.Request{
 		Roles: f.roles,
 		Settings: rules.Settings{
-			Confidence: f.confidence, FalseAlarm: f.falseAlarm, SmallestDifference: math.NaN(),
+			Confidence: f.confidence, FalseAlarm: f.falseAlarm, SmallestDifference: given(cmd, "smallest-difference", f.smallest),
+			StatedSlope: given(cmd, "stated-slope", f.stated), PredictorError: given(cmd, "predictor-error", f.xError),
+			Seed: f.seed, Replicates: f.replicates,
 		},
 		Off: off, PerRow: f.perRow, Command: command + f.readingArgs(),
 	})
@@ -128,6 +141,14 @@ func (f *auditFlags) run(cmd *cobra.Command, file string) error {
 		return errFound
 	}
 	return nil
+}
+
+// given is the value of a flag, NaN when it was not given.
+func given(cmd *cobra.Command, flag string, value float64) float64 {
+	if !cmd.Flags().Changed(flag) {
+		return math.NaN()
+	}
+	return value
 }
 
 // read opens the file, or standard input for -.
@@ -155,6 +176,17 @@ func (f *auditFlags) check() (off []string, err error) {
 	}
 	if !(f.falseAlarm > 0 && f.falseAlarm < 1) {
 		return nil, fmt.Errorf("--false-alarm is %v; it must lie between 0 and 1, as in 0.05", f.falseAlarm)
+	}
+	if f.replicates < 0 || f.replicates > 1000000 {
+		return nil, fmt.Errorf("--replicates is %d; it must lie between 1 and 1000000", f.replicates)
+	}
+	for _, flag := range []struct {
+		name  string
+		value float64
+	}{{"--smallest-difference", f.smallest}, {"--predictor-error", f.xError}} {
+		if !(flag.value >= 0) || math.IsInf(flag.value, 0) {
+			return nil, fmt.Errorf("%s is %v; it must be a number above 0", flag.name, flag.value)
+		}
 	}
 	if f.width != 0 && (f.width < 40 || f.width > 1000) {
 		return nil, fmt.Errorf("--width is %d; it must lie between 40 and 1000", f.width)

@@ -50,6 +50,7 @@ func (f *Fit) Added(columns ...[]float64) AddedF {
 func (f *Fit) offDesign(columns [][]float64) [][]float64 {
 	var left [][]float64
 	for _, c := range columns {
+		c = f.Transformed(c)
 		r := make([]float64, len(c))
 		f.Basis.Residual(r, c)
 		if floats.Norm(r, 2) > 1e-8*floats.Norm(c, 2) {

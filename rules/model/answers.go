@@ -2,6 +2,7 @@ package model
 
 import (
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/floats"
 
@@ -56,7 +57,7 @@ func (e Estimate) Clear() bool { return e.Low > 0 || e.High < 0 }
 
 // Answers answers both questions at the given confidence, in (0, 1).
 func (f *Fit) Answers(confidence float64) Answers {
-	var a Answers
+	a := Answers{Scale: f.Design.scale}
 	if f.Design.X() == nil {
 		a.Slopes = f.means(confidence)
 	} else {
@@ -70,7 +71,7 @@ func (f *Fit) Answers(confidence float64) Answers {
 // quoted: one predictor, no covariate, nothing added, a slope per group.
 func (f *Fit) QuotesOwnLines() bool {
 	d := f.Design
-	return len(d.Predictors) == 1 && len(d.Covariates) == 0 && len(d.Added) == 0 && (!d.CommonSlope || !d.HasGroup())
+	return len(d.Predictors) == 1 && len(d.Covariates) == 0 && len(d.Added) == 0 && d.transform == nil && (!d.CommonSlope || !d.HasGroup())
 }
 
 func (f *Fit) slopes(confidence float64) []Estimate {
@@ -224,13 +225,14 @@ func (f *Fit) compared() (terms []int, labels []string) {
 func (f *Fit) differenceSS(terms []int) float64 {
 	var differences [][]float64
 	for _, k := range terms[1:] {
-		differences = append(differences, f.difference(terms[0], k).Catcher)
+		differences = append(differences, f.Difference(terms[0], k).Catcher)
 	}
 	mean := numeric.Mean(f.Design.Y)
 	about := make([]float64, f.N())
 	for i, v := range f.Fitted {
 		about[i] = v - mean
 	}
+	about = f.Transformed(about)
 	ss := 0.0
 	for _, q := range numeric.NewBasis(differences, f.N()).Q() {
 		v := floats.Dot(q, about)
@@ -239,7 +241,8 @@ func (f *Fit) differenceSS(terms []int) float64 {
 	return ss
 }
 
-func (f *Fit) difference(a, b int) Contrast {
+// Difference is the second term less the first.
+func (f *Fit) Difference(a, b int) Contrast {
 	weights := make([]float64, f.P())
 	weights[a], weights[b] = -1, 1
 	return f.Contrast(weights)
@@ -252,7 +255,7 @@ func (f *Fit) pairs(terms []int, labels []string, confidence float64) []Pair {
 	df := float64(f.DF)
 	for a := range terms {
 		for b := a + 1; b < groups; b++ {
-			c := f.difference(terms[a], terms[b])
+			c := f.Difference(terms[a], terms[b])
 			nan := math.NaN()
 			p := Pair{A: labels[a], B: labels[b], Value: c.Estimate, SE: f.SD * c.Length, T: nan, P: nan, HolmP: nan, TukeyP: nan, Low: nan, High: nan}
 			if f.HasScatter() {
@@ -272,6 +275,12 @@ func (f *Fit) pairs(terms []int, labels []string, confidence float64) []Pair {
 		}
 	}
 	return all
+}
+
+// CriticalPair is the number of standard errors in half an interval of a pair
+// in this design.
+func (f *Fit) CriticalPair(confidence float64) float64 {
+	return criticalPair(len(f.ComparedTerms()), float64(f.DF), confidence)
 }
 
 // criticalPair is the number of standard errors in half an interval of a pair
@@ -296,4 +305,68 @@ func (f *Fit) detectable(pairs []Pair, groups int, confidence float64) float64 {
 	}
 	df := float64(f.DF)
 	return largest * numeric.DetectableNCP(df, 0.8, criticalPair(groups, df, confidence))
+}
+
+// Requote gives the estimate another standard error and degrees of freedom,
+// and with them t, p and the interval.
+func (e *Estimate) Requote(se, df, confidence float64) {
+	e.DF = df
+	e.interval(se, confidence)
+}
+
+// Requote gives the pair another standard error and degrees of freedom; groups
+// is how many are compared, for the width of the interval.
+func (p *Pair) Requote(se float64, groups int, df, confidence float64) {
+	p.SE = se
+	p.T = p.Value / se
+	p.P = numeric.StudentTwoSided(p.T, df)
+	half := criticalPair(groups, df, confidence) * se
+	p.Low, p.High = p.Value-half, p.Value+half
+}
+
+// ComparedTerms lists the terms whose equality the second question asks.
+func (f *Fit) ComparedTerms() []int {
+	terms, _ := f.compared()
+	return terms
+}
+
+// TermOf is the term of a group's slope, or of its level without a predictor;
+// -1 for a group that has none.
+func (f *Fit) TermOf(group string) int {
+	terms, labels := f.compared()
+	for k, label := range labels {
+		if label == group {
+			return terms[k]
+		}
+	}
+	return -1
+}
+
+// EqualBasis is the basis of the model in which the compared slopes, or means,
+// are one; false when fewer than two are compared.
+func (f *Fit) EqualBasis() (*numeric.Basis, bool) {
+	terms, _ := f.compared()
+	if len(terms) < 2 {
+		return nil, false
+	}
+	sum := make([]float64, f.N())
+	var columns [][]float64
+	for k, t := range f.Terms {
+		if slices.Contains(terms, k) {
+			floats.Add(sum, t.Values)
+			continue
+		}
+		columns = append(columns, f.Transformed(t.Values))
+	}
+	return numeric.NewBasis(append(columns, f.Transformed(sum)), f.N()), true
+}
+
+// HasRoomFor reports whether at least the given share of a column's length
+// remains off the design.
+func (f *Fit) HasRoomFor(column []float64, share float64) bool {
+	c := f.Transformed(column)
+	rest := make([]float64, len(c))
+	f.Basis.Residual(rest, c)
+	length := floats.Norm(rest, 2)
+	return length > 0 && length >= share*floats.Norm(c, 2)
 }

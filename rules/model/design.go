@@ -31,7 +31,10 @@ type Design struct {
 	CommonSlope bool
 	Added       []Term // columns that a remedy added
 
-	changes []Change // numbers that a remedy put in place of the table's
+	changes   []Change                    // numbers that a remedy put in place of the table's
+	scale     string                      // "log" when the response was transformed
+	transform func(v []float64) []float64 // of the rows, by a remedy; nil for none
+	lostDF    int                         // degrees of freedom that a remedy used besides its columns
 }
 
 // SetAside is a row that is not used, with its reason in words.

@@ -3,6 +3,7 @@ package model
 import (
 	"fmt"
 	"math"
+	"slices"
 	"sync"
 
 	"gonum.org/v1/gonum/floats"
@@ -18,12 +19,16 @@ type Fit struct {
 	Basis  *numeric.Basis
 	Coef   []float64 // per term, of the centred columns
 
+	// Regressors is the basis of the design before a remedy's transformation of
+	// its rows; without one it is Basis.
+	Regressors *numeric.Basis
+
 	Fitted   []float64
 	Residual []float64 // exactly 0 where the leverage is 1
 	Leverage []float64
 
 	RSS, TSS float64 // residual and total sum of squares, the latter about the mean of the response
-	DF       int     // rows less parameters
+	DF       int     // rows less parameters, and less what a remedy estimated besides
 	SD       float64 // residual standard deviation; 0 for a perfect fit, NaN without residual degrees of freedom
 	Perfect  bool    // the lines pass through every row, up to rounding
 
@@ -60,13 +65,21 @@ func NewFit(d *Design) (*Fit, error) {
 	if n < p {
 		return nil, &NoFit{Rows: n, Parameters: p}
 	}
-	columns := make([][]float64, p)
-	for k, t := range terms {
-		columns[k] = t.Values
-	}
-	f := &Fit{Design: d, Terms: terms, Basis: numeric.NewBasis(columns, n), DF: n - p}
+	f := &Fit{Design: d, Terms: terms, DF: n - p - d.lostDF}
+	f.Basis = numeric.NewBasis(f.RegressorColumns(), n)
+	f.Regressors = f.Basis
 	if !f.Basis.FullRank() {
 		return nil, &NoFit{Rows: n, Parameters: p, Tangles: tangles(f.Basis, terms)}
+	}
+	if d.transform != nil {
+		columns := make([][]float64, p)
+		for k, t := range terms {
+			columns[k] = d.transform(t.Values)
+		}
+		f.Basis = numeric.NewBasis(columns, n)
+		if !f.Basis.FullRank() {
+			return nil, &NoFit{Rows: n, Parameters: p, Tangles: tangles(f.Basis, terms)}
+		}
 	}
 	f.Leverage = f.Basis.Leverage()
 	f.solve()
@@ -96,6 +109,7 @@ func (f *Fit) solve() {
 	for i, v := range d.Y {
 		y[i] = v - mean
 	}
+	y = f.Transformed(y)
 	f.Coef = f.Basis.Solve(y)
 	for k, t := range f.Terms {
 		if t.Part == Level {
@@ -110,6 +124,14 @@ func (f *Fit) solve() {
 			f.Residual[i] = 0
 		}
 		f.Fitted[i] = d.Y[i] - f.Residual[i]
+	}
+	if f.IsTransformed() { // the residuals are those of the transformed rows
+		for i := range n {
+			f.Fitted[i] = 0
+			for k, t := range f.Terms {
+				f.Fitted[i] += f.Coef[k] * t.Values[i]
+			}
+		}
 	}
 	f.RSS = floats.Dot(f.Residual, f.Residual)
 	f.TSS = floats.Dot(y, y)
@@ -129,6 +151,58 @@ func (f *Fit) solve() {
 func passesThroughAll(rss float64, y []float64) bool {
 	const eps = 0x1p-52
 	return rss <= 64*64*eps*eps*float64(len(y))*floats.Dot(y, y)
+}
+
+// RegressorColumns are the columns of the design matrix, before a remedy's
+// transformation of its rows.
+func (f *Fit) RegressorColumns() [][]float64 {
+	columns := make([][]float64, len(f.Terms))
+	for k, t := range f.Terms {
+		columns[k] = t.Values
+	}
+	return columns
+}
+
+// Transformed carries out on a column what a remedy did to the rows; without
+// one it is v itself.
+func (f *Fit) Transformed(v []float64) []float64 {
+	if f.Design.transform == nil {
+		return v
+	}
+	return f.Design.transform(v)
+}
+
+// IsTransformed reports whether a remedy transformed the rows.
+func (f *Fit) IsTransformed() bool { return f.Design.transform != nil }
+
+// coarse is the least share of the residual SD that a step of rounding must
+// have to be seen in the shape of the residuals.
+const coarse = 1.0 / 20
+
+// Grid gives the step to which the response was rounded when it is coarse
+// against the scatter: all differences are multiples of it to a millionth, and
+// it is more than a twentieth of the residual SD.
+func (f *Fit) Grid() (step float64, isCoarse bool) {
+	if !f.HasScatter() || f.IsTransformed() {
+		return 0, false
+	}
+	y := slices.Clone(f.Design.Y)
+	slices.Sort(y)
+	y = slices.Compact(y)
+	step = math.Inf(1)
+	for i := 1; i < len(y); i++ {
+		step = min(step, y[i]-y[i-1])
+	}
+	if len(y) < 2 || step <= coarse*f.SD {
+		return 0, false
+	}
+	for _, v := range y {
+		k := (v - y[0]) / step
+		if math.Abs(k-math.Round(k)) > 1e-6 {
+			return 0, false
+		}
+	}
+	return step, true
 }
 
 // N is the number of rows, P the number of parameters.

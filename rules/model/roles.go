@@ -110,7 +110,9 @@ func Resolve(t *readers.Table, r Roles) (Columns, error) {
 		if err != nil {
 			return nil, err
 		}
-		if other, twice := taken[col]; twice {
+		if other, twice := taken[col]; twice && other == role {
+			return nil, refuse(t, "column %q is given twice as %s; name it once", col.Title(), role)
+		} else if twice {
 			return nil, refuse(t, "column %q is given both as %s and as %s; give each column one role", col.Title(), other, role)
 		}
 		taken[col] = role

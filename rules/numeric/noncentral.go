@@ -73,12 +73,16 @@ func DetectableNCP(df, power, crit float64) float64 {
 
 // crossing returns where f, rising from below 0 at low to above 0 at high,
 // passes 0: false position with the Illinois rule (Dowell and Jarratt 1971),
-// which keeps the bracket and still converges faster than linearly.
+// which keeps the bracket and still converges faster than linearly. Either end may
+// be infinite there.
 func crossing(f func(float64) float64, low, high float64) float64 {
 	below, above := f(low), f(high)
 	side := 0
 	for range 200 {
 		x := high - above*(high-low)/(above-below)
+		if math.IsInf(above-below, 1) {
+			x = low + (high-low)/2
+		}
 		v := f(x)
 		switch {
 		case v == 0:

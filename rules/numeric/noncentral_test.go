@@ -27,8 +27,12 @@ func TestNoncentralAgainstR(t *testing.T) {
 		}
 		d := math.Abs(got - row.want)
 		worst[row.function] = max(worst[row.function], d)
-		// Absolute: R's own sums stop at about 1e-11.
-		if d > 1e-9 {
+		// Absolute, as R's own accuracy: see the script.
+		limit := 1e-10
+		if row.function == "ptukey" {
+			limit = 1e-7
+		}
+		if d > limit {
 			t.Errorf("%v = %.12g, want %.12g, off by %.2g", row, got, row.want, d)
 		}
 	}
@@ -46,14 +50,19 @@ func TestNoncentralKeepsSmallTails(t *testing.T) {
 			if lower := NoncentralTCDF(-a, b, -c); off(lower, got) > 1e-14 {
 				t.Errorf("%v: the mirror image gives %v, not %v", row, lower, got)
 			}
-		case "range_upper":
+		case "range_upper", "studentized_range":
 			got = TukeyUpper(a, int(b), c)
 		default:
 			t.Fatalf("no such function: %v", row)
 		}
 		d := off(got, row.want)
+		limit := 1e-12
+		if row.function == "studentized_range" {
+			// scipy's result is one minus a sum that it holds to about 1e-10.
+			limit, d = 1e-9, math.Abs(got-row.want)
+		}
 		worst[row.function] = max(worst[row.function], d)
-		if d > 1e-11 && row.want > 1e-300 {
+		if d > limit && row.want > 1e-300 {
 			t.Errorf("%v = %.15g, want %.15g, off by %.2g", row, got, row.want, d)
 		}
 	}
@@ -122,10 +131,17 @@ func TestRangeOfTwoIsStudents(t *testing.T) {
 		if got := NoncentralTTwoSided(x, df, 0); off(got, want) > 1e-10 && want > 1e-290 {
 			t.Fatalf("noncentral t at %v, df %v: %v, want %v", x, df, got, want)
 		}
-		p := rapid.Float64Range(0.01, 0.999).Draw(t, "p")
-		k := rapid.IntRange(2, 12).Draw(t, "groups")
-		if got := TukeyUpper(TukeyQuantile(p, k, df), k, df); off(got, 1-p) > 1e-10 {
-			t.Fatalf("TukeyQuantile(%v, %d, %v) is exceeded with chance %v", p, k, df, got)
-		}
 	})
+}
+
+func TestTukeyQuantileInvertsTheTail(t *testing.T) {
+	for _, p := range []float64{1e-6, 0.3, 0.95, 0.999, 1 - 1e-9} {
+		for _, k := range []int{2, 5, 30} {
+			for _, df := range []float64{1, 8, 300, math.Inf(1)} {
+				if got := TukeyUpper(TukeyQuantile(p, k, df), k, df); off(got, 1-p) > 1e-10 {
+					t.Errorf("TukeyQuantile(%v, %d, %v) is exceeded with chance %v", p, k, df, got)
+				}
+			}
+		}
+	}
 }

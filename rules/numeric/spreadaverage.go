@@ -15,6 +15,7 @@ import "math"
 func averageOverSpread(df float64, k, slope func(s float64) float64) float64 {
 	// ln S has density e^constant exp(df (u - (e^2u - 1)/2)), with its peak at 0.
 	logDensity := func(u float64) float64 { return df * (u - math.Expm1(2*u)/2) }
+	logTerm := func(u float64) float64 { return logDensity(u) + math.Log(k(math.Exp(u))) }
 	constant := math.Log(2) + 0.5*math.Log(df/(4*math.Pi)) - stirlingError(df/2)
 
 	// What lies 45 below the peak in the logarithm is below rounding.
@@ -23,7 +24,7 @@ func averageOverSpread(df float64, k, slope func(s float64) float64) float64 {
 	scan := 0.5 / math.Sqrt(2*df)
 	for _, direction := range []float64{-scan, scan} {
 		for u := 0.0; logDensity(u) > max(height-negligible, -745); u += direction {
-			if v := logDensity(u) + math.Log(k(math.Exp(u))); v > height {
+			if v := logTerm(u); v > height {
 				peak, height = u, v
 			}
 		}
@@ -36,18 +37,15 @@ func averageOverSpread(df float64, k, slope func(s float64) float64) float64 {
 	// Off the real line the integrand stays bounded up to about pi/4, whatever
 	// df: hence the smallest step.
 	step := min(0.12, 0.4/math.Sqrt(1+2*df*s*s+slope(s)*slope(s)))
-	sum := k(s) * math.Exp(logDensity(peak)-height)
+	sum := math.Exp(logTerm(peak) - height)
 	for _, direction := range []float64{-step, step} {
 		for i := 1.0; ; i++ {
 			u := peak + i*direction
-			d := logDensity(u)
-			// On the near side of 0 the density still rises.
-			if d < height-negligible && u*direction > 0 {
+			// On the way to 0 the density still rises.
+			if logDensity(u) < max(height-negligible, -745) && u*direction > 0 {
 				break
 			}
-			if d > -745 {
-				sum += k(math.Exp(u)) * math.Exp(d-height)
-			}
+			sum += math.Exp(logTerm(u) - height)
 		}
 	}
 	return sum * step * math.Exp(constant+height)

@@ -86,6 +86,9 @@ func (r *rangeTail) at(j int) (cdf, weight float64) {
 // for k deviates, the largest of which is z. The difference is taken by
 // logarithms, so that it keeps its digits where it is small.
 func (r *rangeTail) normal(w float64) float64 {
+	if w > 56 {
+		return 0 // exp(-w²/4) is below the smallest number.
+	}
 	sum := 0.0
 	for j := range int(math.Ceil((w/2 + 9 - rangeFrom) / r.step)) {
 		cdf, weight := r.at(j)

@@ -4,8 +4,9 @@ import "footing/rules/model"
 
 // DropCopies answers with one row kept of each set of copies.
 var DropCopies = &Remedy{
-	Name: "drop-copies",
-	Do:   "find out which of the rows was measured, and delete the copies",
+	Name:  "drop-copies",
+	Do:    "find out which of the rows was measured, and delete the copies",
+	Short: "without the copies",
 	Edit: func(s Start) (*model.Design, error) {
 		if len(s.Target.Rows) == 0 {
 			return nil, &NotApplicable{Reason: "no row of the fit is a copy"}

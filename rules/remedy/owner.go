@@ -15,32 +15,12 @@ var (
 		Do:   "measure more rows, at several different values of the predictor in each group",
 	}
 	LeaveOut = &Remedy{
-		Name: "leave-out",
-		Do:   "leave out one of the columns that carry the same information, then run again",
+		Name: "leave-out-constant",
+		Do:   "leave the column out, then run again",
 	}
-	NameSubjects = &Remedy{
-		Name: "average-subjects",
-		Do:   "average the rows of each subject to one row, or use a method for repeated measurements; do not quote the intervals above as they are",
-	}
-	WidenRange = &Remedy{
-		Name: "common-range",
-		Do:   "compare the groups only where their predictor values overlap, or measure each group where the other was measured",
-	}
-	Transform = &Remedy{
-		Name: "bend-the-model",
-		Do:   "add the square of the predictor as a further column, or take logarithms if the response is a quantity that grows by factors; then run again",
-	}
-	EvenScatter = &Remedy{
-		Name: "even-scatter",
-		Do:   "quote the HC3 standard errors of the JSON report in place of the classical ones, or take logarithms if the scatter grows with the response",
-	}
-	LongTails = &Remedy{
-		Name: "look-at-residuals",
-		Do:   "look at the rows with the largest residuals; with many rows the interval of the slope stands up to this, with few it does not",
-	}
-	ModelOrder = &Remedy{
-		Name: "model-order",
-		Do:   "give the order as a covariate too, find out what drifted, or quote the slope only with this caution",
+	AddGroup = &Remedy{
+		Name: "add-group",
+		Do:   "give the column as --group, then run again",
 	}
 	LookUp = &Remedy{
 		Name: "look-up",

@@ -5,25 +5,38 @@
 package remedy
 
 import (
+	"math"
+
 	"footing/rules/model"
 )
 
 // Remedy is one thing to do about a breach.
 type Remedy struct {
-	Name string // words joined by hyphens
-	Do   string // a verb phrase in plain language
+	Name   string // words joined by hyphens
+	Do     string // how to carry it out: a verb phrase in plain language
+	Source string // of the method, "" where there is none to name
+	Short  string // in a sentence: "with HC3 standard errors"
+
 	// Edit gives the design to be fitted in place of the original one, which it
-	// does not change. It is nil when only the owner of the table can act. A
+	// does not change. Answer answers anew from the original rows. A remedy has
+	// one of the two, or neither when only the owner of the table can act. A
 	// *NotApplicable error says why it does not apply here.
-	Edit func(Start) (*model.Design, error)
+	Edit   func(Start) (*model.Design, error)
+	Answer func(Start) (model.Answers, error)
+
+	// Slow marks a remedy of thousands of refits, left out of large tables.
+	Slow bool
 }
 
 // CanBeTried reports whether the remedy can be carried out on rows at hand.
-func (r *Remedy) CanBeTried() bool { return r.Edit != nil }
+func (r *Remedy) CanBeTried() bool { return r.Edit != nil || r.Answer != nil }
 
 // Try answers the two questions under the remedy. A *NotApplicable error says
 // why it cannot be tried here.
 func (r *Remedy) Try(s Start) (model.Answers, error) {
+	if r.Answer != nil {
+		return r.Answer(s)
+	}
 	d, err := r.Edit(s)
 	if err != nil {
 		return model.Answers{}, err
@@ -41,6 +54,7 @@ type Start struct {
 	Fit        *model.Fit // nil when the original rows have no fit
 	Target     Target
 	Confidence float64
+	Seed       uint64
 }
 
 // Target is what a finding asks a remedy to act on.
@@ -48,9 +62,21 @@ type Target struct {
 	Rows   []int             // used rows, as indices of the design
 	Labels map[string]string // group labels to be replaced
 	Values []model.Change    // numbers to be put in place of those of the table
+
+	Reliability map[string]float64 // of the predictor, by group
+	LeaveOut    int                // position of a further predictor or covariate
+	Subjects    []int              // of each used row, where they are not those of the design
 }
 
 // NotApplicable says why a remedy cannot be tried on these rows.
 type NotApplicable struct{ Reason string }
 
 func (e *NotApplicable) Error() string { return e.Reason }
+
+func rootSum(v []float64) float64 {
+	sum := 0.0
+	for _, x := range v {
+		sum += x
+	}
+	return math.Sqrt(sum)
+}

@@ -1,9 +1,10 @@
 """Reference values of noncentral t and the studentized range, by quadrature in
-40-digit arithmetic of mpmath, small tails included.
+mpmath's arithmetic of 40 digits and more, small tails included, and of the studentized range by scipy.
 
     python3 noncentral.py > noncentral_small.tsv
 """
 import mpmath
+import scipy.stats
 from mpmath import mp, mpf
 
 mp.dps = 40
@@ -13,32 +14,44 @@ def upper(x):
     return mpmath.erfc(x / mpmath.sqrt(2)) / 2
 
 
-def average(df, k, near):
-    """Mean of k(S), S = sqrt(chi-squared/df), over pieces about near."""
-    df = mpf(df)
-    log_c = mpmath.log(2) + df / 2 * mpmath.log(df / 2) - mpmath.loggamma(df / 2)
-
-    def f(s):
-        return mpmath.exp(log_c + (df - 1) * mpmath.log(s) - df * s * s / 2) * k(s)
-
-    width = 1 / mpmath.sqrt(df) / 2
-    cuts = sorted({mpf(0)} | {c for i in range(-12, 13) for x in (1, near) if (c := x + i * width * min(x, 1)) > 0})
-    return mpmath.quad(f, cuts + [mpf(60) if df < 4 else mpf(12)])
+def over_the_line(log_f):
+    """Integral of exp(log_f), unimodal, over pieces about its peak."""
+    low, high = mpf(-60), mpf(60)
+    for _ in range(120):
+        a, b = low + (high - low) / 3, high - (high - low) / 3
+        low, high = (a, high) if log_f(a) < log_f(b) else (low, b)
+    peak = (low + high) / 2
+    top = log_f(peak)
+    cuts = [peak]
+    for side in (-1, 1):
+        # Pieces over which the logarithm falls by about 8, down to -100.
+        x = peak
+        for drop in range(8, 104, 8):
+            step = mpf(1)
+            while log_f(x + side * step) > top - drop:
+                step *= 2
+            lo, hi = mpf(0), step
+            for _ in range(30):
+                mid = (lo + hi) / 2
+                lo, hi = (mid, hi) if log_f(x + side * mid) > top - drop else (lo, mid)
+            x += side * hi
+            cuts.append(x)
+    return mpmath.exp(top) * mpmath.quad(lambda u: mpmath.exp(log_f(u) - top), sorted(cuts))
 
 
 def t_upper(t, df, ncp):
-    t, ncp = mpf(t), mpf(ncp)
-    return average(df, lambda s: upper(t * s - ncp), max(ncp, 1) / t)
+    """Over u = ln S, S = sqrt(chi-squared/df)."""
+    t, df, ncp = mpf(t), mpf(df), mpf(ncp)
+    c = mpmath.log(2) + df / 2 * mpmath.log(df / 2) - mpmath.loggamma(df / 2)
+    return over_the_line(lambda u: c + df * u - df * mpmath.exp(2 * u) / 2 + mpmath.log(upper(t * mpmath.exp(u) - ncp)))
 
 
 def range_upper(w, k):
-    """One minus the distribution function of the range, from -12 to w + 12."""
-    cuts = [mpf(v) for v in (-12, -4, 0)] + [w / 2, w, w + 4, w + 12]
-    low = k * mpmath.quad(
-        lambda z: mpmath.npdf(z) * (mpmath.ncdf(z) ** (k - 1) - (mpmath.ncdf(z) - mpmath.ncdf(z - w)) ** (k - 1)),
-        sorted(cuts),
-    )
-    return low
+    def log_f(z):
+        c = upper(-z)
+        return mpmath.log(mpmath.npdf(z)) + mpmath.log(c ** (k - 1) - (c - upper(w - z)) ** (k - 1))
+
+    return k * over_the_line(log_f)
 
 
 def emit(name, args, value):
@@ -46,15 +59,20 @@ def emit(name, args, value):
 
 
 def main():
-    print(f"# mpmath {mpmath.__version__}, {mp.dps} digits; noncentral.py")
+    print(f"# mpmath {mpmath.__version__}, scipy {scipy.__version__}; noncentral.py")
     print("function\ta\tb\tc\tvalue")
     for df in [1.5, 8, 46, 400]:
         for ncp in [-6, 0, 2.8, 12, 60]:
             for t in [0.5, 2, 8, 30, 75]:
                 emit("t_upper", [t, df, ncp], t_upper(t, df, ncp))
     for k in [2, 3, 6, 30]:
-        for w in [0.2, 1, 3.3, 6, 15, 30]:
+        for w in [0.2, 3.3, 8, 14]:
+            mp.dps = int(30 + w * w / 8)  # The difference of powers loses that many.
             emit("range_upper", [w, k, float("inf")], range_upper(mpf(w), k))
+    for k in [2, 3, 5, 12, 25]:
+        for df in [1, 2, 3.5, 10, 36, 500]:
+            for q in [0.5, 3.4, 6, 20]:
+                emit("studentized_range", [q, k, df], mpf(float(scipy.stats.studentized_range.sf(q, k, df))))
 
 
 main()
