@@ -139,12 +139,12 @@ func aboutMedians(values []float64, group []int32, groups int) (centre []float64
 		centre[k] = middle[group[k]]
 		rest[k] = math.Abs(v - centre[k])
 	}
-	slices.Sort(rest)
 	// With many ties at the middle the median deviation is 0; a wider share of
 	// the deviations then stands for it.
-	for _, share := range []struct{ at, z float64 }{{0.5, 0.6745}, {0.75, 1.1503}, {0.9, 1.6449}} {
-		if scale = numeric.Quantile(rest, share.at) / share.z; scale > 0 {
-			break
+	if scale = numeric.Median(rest) / 0.6745; scale == 0 {
+		slices.Sort(rest)
+		if scale = numeric.Quantile(rest, 0.75) / 1.1503; scale == 0 {
+			scale = numeric.Quantile(rest, 0.9) / 1.6449
 		}
 	}
 	return centre, scale * math.Sqrt(float64(len(values))/float64(max(1, len(values)-spent)))

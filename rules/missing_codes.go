@@ -223,6 +223,9 @@ func farGap(v float64, times int, impossible bool) (gap float64, asked bool) {
 // allOf tells -9, 99, -999, 99.9 and the like: one digit over and over, and
 // more than a single one unless it is negative.
 func allOf(v float64, digit byte) bool {
+	if k := v * 1000; k != math.Trunc(k) {
+		return false // no code has more decimals, and most measurements end here
+	}
 	n := 0
 	for _, c := range []byte(wording.Number(v)) {
 		switch c {

@@ -76,10 +76,29 @@ func (h heap) words(column string) string {
 		share, column, wording.Number(float64(h.of)*h.step), wording.Number(h.step), expected)
 }
 
+// mostHeaped is how many numbers show a heap; longer columns are seen at as many
+// places, evenly spaced.
+const mostHeaped = 20000
+
+// sample takes at most so many numbers of a profile, evenly spaced in the file.
+func (f *Profile) sample(most int) *Profile {
+	n := len(f.Values)
+	if n <= most {
+		return f
+	}
+	s := &Profile{Step: f.Step, Values: make([]float64, most), Sorted: make([]float64, most)}
+	for k := range most {
+		s.Values[k] = f.Values[k*n/most]
+		s.Sorted[k] = f.Sorted[k*n/most]
+	}
+	return s
+}
+
 // heapOf finds the multiple that comes most unexpectedly often, under the way of
 // rounding that explains the column better; ok is false when the column spans
 // too few steps to tell.
 func heapOf(f *Profile) (heap, bool) {
+	f = f.sample(mostHeaped)
 	decimals, ok := finestDecimals(f)
 	if !ok {
 		return heap{}, false

@@ -158,15 +158,3 @@ func (p *Pass) fitted(col *readers.Column) bool {
 	}
 	return false
 }
-
-// changedRows lists the rows of changes as indices of the design.
-func (p *Pass) changedRows(all []model.Change) []int {
-	rows := make([]int, len(all))
-	for k, c := range all {
-		rows[k] = c.Row
-	}
-	if p.Design == nil {
-		return nil
-	}
-	return p.Design.RowsAt(rows)
-}

@@ -282,12 +282,18 @@ func (v view) stretch(offAt []float64, c conversion, from, last int, ordered boo
 	sure := 0
 	for k := from; k <= last; k++ {
 		at = append(at, k)
-		mended = append(mended, math.Abs(v.z(k, c.mend(v.f.Values[k]))))
+		mended = append(mended, v.z(k, c.mend(v.f.Values[k])))
 		if v.sure(offAt, c, k) {
 			sure++
 		}
 	}
 	if sure < 3 || 10*sure < 7*len(at) || 5*len(at) > 2*n {
+		return shift{}, false
+	}
+	// Rows of the right unit lie about the centre, not all on one side of it: a
+	// long tail divided by 1000 lies near 0, and there nothing else may.
+	off := math.Abs(numeric.Median(mended))
+	if off > 2.8/math.Sqrt(float64(len(at)))+0.1 {
 		return shift{}, false
 	}
 	gap := 1.0
@@ -299,7 +305,7 @@ func (v view) stretch(offAt []float64, c conversion, from, last int, ordered boo
 		return shift{}, false
 	}
 	first, end := v.p.Table.Row(v.f.Rows[from]), v.p.Table.Row(v.f.Rows[last])
-	return shift{at: at, by: c, of: fmt.Sprintf("rows %d to %d", first, end), chance: chance * float64(n), off: numeric.Median(mended)}, true
+	return shift{at: at, by: c, of: fmt.Sprintf("rows %d to %d", first, end), chance: chance * float64(n), off: off}, true
 }
 
 // apart gives the chance that so many given rows lie off when as many do as do
@@ -359,6 +365,16 @@ func (p *Pass) labelShift(f *Profile, codes []int32, level int32, column, name s
 		}
 	}
 	if len(at) < 3 || len(others) < 5 || len(at) > len(others) {
+		return nil
+	}
+	// A label in another unit has its middle beyond nearly all others.
+	middle, below := numeric.Median(own), 0
+	for _, x := range others {
+		if x < middle {
+			below++
+		}
+	}
+	if 10*below > len(others) && 10*below < 9*len(others) {
 		return nil
 	}
 	centre := numeric.Median(others)
