@@ -17,7 +17,7 @@ import (
 func (e *examination) result() *Result {
 	r := &Result{Format: Format, Input: e.input(), Slopes: []Slope{}, Findings: e.orderedFindings(), Verdict: e.verdict()}
 	if e.pass.Design == nil {
-		s := Suggest(e.pass.Table, e.request.Command)
+		s := Suggest(e.pass, e.request.Command)
 		r.Suggested = &s
 		return r
 	}

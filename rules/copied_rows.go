@@ -20,7 +20,7 @@ var CopiedRows = &Rule{
 	Why:    "A row that stands twice counts twice, and makes intervals narrower than the measurements allow.",
 	Method: "rows equal in every column but label, order and running numbers, against the chance that rounded measurements coincide: " +
 		"pairs alike in labels and set values, times the share of pairs that agree in each measured column by its resolution and scatter",
-	Limit:    "copies whose chance of coming about by rounding is below 0.2 %, so that sound tables are suspected in fewer than 1 in 500",
+	Limit:    "so many copies whose chance of coming about by rounding is below 0.2 %, so that sound tables are suspected in fewer than 1 in 500",
 	Needs:    NeedsTable,
 	Remedies: []*remedy.Remedy{remedy.DropCopies},
 	Run:      copiedRows,
@@ -45,6 +45,7 @@ func copiedRows(p *Pass) (Outcome, error) {
 		return sound("no row repeats another"), nil
 	}
 	chance := coincidence(p.Table, columns, sets)
+	chance = ofSoMany(chance, sets)
 	if chance >= copyChance {
 		o := sound(fmt.Sprintf("%s alike in every value, as rounded measurements may well be", wording.Count(len(sets), "pair or set of rows")))
 		o.Evidence = map[string]any{"chance": chance}
@@ -180,6 +181,27 @@ func coincidence(t *readers.Table, columns []*readers.Column, sets [][]int) floa
 		before = append(before, values)
 	}
 	return -math.Expm1(-expected)
+}
+
+// ofSoMany turns the chance of any copy into that of as many as there are, by
+// Poisson's law; where coincidences are common, copies come in heaps and the law
+// does not hold.
+func ofSoMany(chance float64, sets [][]int) float64 {
+	expected := -math.Log1p(-chance)
+	if expected > 0.2 {
+		return chance
+	}
+	copies := 0
+	for _, set := range sets {
+		copies += len(set) - 1
+	}
+	fewer, term := 0.0, math.Exp(-expected)
+	for k := range copies {
+		fewer += term
+		term *= expected / float64(k+1)
+	}
+	// The first term left out stands for the rest when the difference is lost.
+	return max(1-fewer, min(term, chance))
 }
 
 func withoutCopies(t *readers.Table, sets [][]int) []int {

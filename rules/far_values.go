@@ -20,7 +20,7 @@ var FarValues = &Rule{
 	Why:    "A slipped point or digit makes a number that reads well and is wrong; far out, one such row can make the slope.",
 	Method: "distance from the median of the group, in robust standard deviations (1.4826 times the median absolute deviation, over all groups together); " +
 		"more where the outer tenth on that side lies further out; and for positive numbers with a long tail above on the scale of logarithms too. " +
-		"A number that comes among its like when divided or multiplied by 10, 100 or 1000 is told as a slipped point",
+		"Suspected codes, day numbers and swapped cells are left to their own rules. A number that comes among its like when divided or multiplied by 10, 100 or 1000 is told as a slipped point",
 	Limit: "7 + 60/n robust standard deviations with n numbers in the column, and 4.5 + 30/n of the logarithms; at most a twentieth of the numbers; of a column set by design, a number beyond the others by more than twice their range, standing alone. " +
 		"Normal measurements do not reach so far in 1 of 500 tables",
 	Needs:    NeedsTable,
@@ -33,11 +33,20 @@ func farValues(p *Pass) (Outcome, error) {
 	var slips []model.Change
 	for _, col := range p.measured() {
 		b := p.bulkOf(col)
-		for _, k := range b.far() {
+		far := b.far()
+		if len(far) == 0 {
+			continue
+		}
+		told := p.toldElsewhere(col)
+		low, high := b.without(far, told)
+		for _, k := range far {
+			if told[b.f.Rows[k]] {
+				continue
+			}
 			row, v := b.f.Rows[k], b.f.Values[k]
 			factor := b.slip(k)
 			found.cell(col, row, func() string {
-				said := fmt.Sprintf("%s %s is %s beside %s to %s", p.Table.Address(col, row), col.Title(), wording.Number(v), wording.Number(b.low), wording.Number(b.high))
+				said := fmt.Sprintf("%s %s is %s beside %s to %s", p.Table.Address(col, row), col.Title(), wording.Number(v), wording.Number(low), wording.Number(high))
 				if factor != 0 {
 					said += fmt.Sprintf(" (%s with the point moved?)", wording.Number(v*factor))
 				}
@@ -67,7 +76,6 @@ type bulk struct {
 	logScale  float64
 	below     float64 // scale on that side, from the outer tenth; at least scale
 	above     float64
-	low, high float64 // the middle 90 %, for words
 	set       bool
 }
 
@@ -79,7 +87,6 @@ func (p *Pass) bulkOf(col *readers.Column) *bulk {
 	if len(f.Values) < 8 {
 		return b
 	}
-	b.low, b.high = f.Quantile(0.05), f.Quantile(0.95)
 	group := make([]int32, len(f.Values))
 	groups := 1
 	if g := p.Columns.Group; g != nil {
@@ -114,6 +121,22 @@ func (p *Pass) bulkOf(col *readers.Column) *bulk {
 		b.logCentre, b.logScale = aboutMedians(logs, group, groups)
 	}
 	return b
+}
+
+// without is the range of the numbers that lie neither far out nor are doubted
+// by another rule.
+func (b *bulk) without(far []int, told map[int]bool) (low, high float64) {
+	out := make(map[int]bool, len(far))
+	for _, k := range far {
+		out[k] = true
+	}
+	low, high = math.Inf(1), math.Inf(-1)
+	for k, v := range b.f.Values {
+		if !out[k] && !told[b.f.Rows[k]] {
+			low, high = min(low, v), max(high, v)
+		}
+	}
+	return low, high
 }
 
 // aboutMedians gives each value the median of its group, of all when the group has

@@ -22,7 +22,7 @@ var MissingCodes = &Rule{
 		"(the middle 96 % of the numbers that are no such codes), and repeated or impossible beside the rest, as a negative number among positive ones is. " +
 		"These are used, and answers without them are told. Codes in words are taken as missing",
 	Limit: "all nines beyond the bulk by its width, or by a quarter of it when repeated or impossible; 0 and -1 repeated, or -1 impossible, by half of it; repeated sevens or eights by its width; " +
-		"other repeated whole numbers by twice it. 0 is no suspect in a column that was set by design. Two codes in words, or one that may mean another thing (a dash, nd)",
+		"other repeated whole numbers by twice it; and beyond the farthest of the others, unless it is a repeated or impossible nine, 0 or -1. 0 is no suspect in a column that was set by design. Two codes in words, or one that may mean another thing (a dash, nd)",
 	Needs:    NeedsTable,
 	Remedies: []*remedy.Remedy{remedy.AsMissing},
 	Run:      missingCodes,
@@ -182,6 +182,14 @@ func suspectedCodes(f *Profile, set bool) []float64 {
 		}
 		gap := max(low-v, v-high)
 		impossible := v < 0 && bulk[0] >= 0
+		// A code that nothing but its distance speaks for must lie beyond even the
+		// farthest of the others: long tails come through 99 and 77 too.
+		farthest := max(bulk[0]-v, v-bulk[len(bulk)-1])
+		switch {
+		case times[k] == 1 && !impossible && farthest <= 0.5*(high-low),
+			!allOf(v, '9') && v != 0 && v != -1 && farthest <= 0:
+			continue
+		}
 		if enough, asked := farGap(v, times[k], impossible); asked && gap > 0 && gap > enough*(high-low) {
 			codes = append(codes, v)
 		}

@@ -1,6 +1,8 @@
 package rules
 
 import (
+	"slices"
+
 	"footing/readers"
 	"footing/rules/model"
 	"footing/rules/wording"
@@ -157,4 +159,30 @@ func (p *Pass) fitted(col *readers.Column) bool {
 		return true
 	}
 	return false
+}
+
+// toldElsewhere gives the rows whose number in a column another rule doubts for
+// a reason that makes it lie far out: a code, the number of a day, a cell of
+// another column.
+func (p *Pass) toldElsewhere(col *readers.Column) map[int]bool {
+	told := map[int]bool{}
+	f := p.Profile(col)
+	codes := suspectedCodes(f, p.mayBeSet(col))
+	for k, v := range f.Values {
+		if slices.Contains(codes, v) {
+			told[f.Rows[k]] = true
+		}
+	}
+	for _, i := range serials(f) {
+		told[i] = true
+	}
+	for _, other := range p.measured() {
+		if other == col {
+			continue
+		}
+		for _, i := range p.swapped(col, other) {
+			told[i] = true
+		}
+	}
+	return told
 }
