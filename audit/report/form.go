@@ -3,7 +3,6 @@ package report
 import (
 	"bytes"
 	"io"
-	"slices"
 	"strings"
 
 	"footing/audit"
@@ -68,15 +67,20 @@ func FormNames() []string {
 	return names
 }
 
-// FormOf finds the form that a file's extension names; nil when it names none.
+// FormOf finds the form that a file's extension names, the longest that fits; nil
+// when it names none.
 func FormOf(path string) *Form {
 	lower := strings.ToLower(path)
+	var found *Form
+	longest := 0
 	for _, f := range Forms {
-		if slices.ContainsFunc(f.Extensions, func(ext string) bool { return strings.HasSuffix(lower, ext) }) {
-			return f
+		for _, ext := range f.Extensions {
+			if len(ext) > longest && strings.HasSuffix(lower, ext) {
+				found, longest = f, len(ext)
+			}
 		}
 	}
-	return nil
+	return found
 }
 
 // HeadLength is how much of a file WrittenHere wants to see.

@@ -134,10 +134,11 @@ func (m *markdown) open(r *audit.Result) {
 // stateWord is a finding's state with its sign, told apart without colour.
 func stateWord(f *audit.Finding) string {
 	sign, _ := stateSign(f.State)
+	word := inert(sign) + " " + string(f.State)
 	if f.Waived != nil {
-		return `\` + sign + " " + string(f.State) + " (waived)"
+		word += " (waived)"
 	}
-	return `\` + sign + " " + string(f.State)
+	return word
 }
 
 // folded is what asks for nothing: passes and what does not apply.

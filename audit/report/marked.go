@@ -119,7 +119,11 @@ func (m *marked) build() error {
 	if err := m.file.SetSheetName("Sheet1", m.sheet); err != nil {
 		return err
 	}
-	bold, err := m.file.NewStyle(&excelize.Style{Font: &excelize.Font{Bold: true}})
+	font, err := m.file.GetDefaultFont()
+	if err != nil {
+		return err
+	}
+	bold, err := m.file.NewStyle(&excelize.Style{Font: &excelize.Font{Family: font, Size: 11, Bold: true}})
 	if err != nil {
 		return err
 	}
@@ -273,14 +277,15 @@ func (m *marked) hatch() error {
 	return nil
 }
 
-// mark fills the cells that findings name and notes what is said of them.
-func (m *marked) mark() error {
-	type note struct {
-		state audit.State
-		text  []string
-	}
-	notes := map[string]*note{}
-	var order []string
+// cellNote is what is said of one cell.
+type cellNote struct {
+	state audit.State // the worst of the findings; "" for none, in a row set aside
+	text  []string
+}
+
+// cellNotes gathers what is said of each cell, in the order of the report.
+func (m *marked) cellNotes() (order []string, notes map[string]*cellNote) {
+	notes = map[string]*cellNote{}
 	for k := range m.r.Findings {
 		f := &m.r.Findings[k]
 		if !f.IsOpen() {
@@ -291,7 +296,7 @@ func (m *marked) mark() error {
 			for i, cell := range m.cells(place) {
 				n := notes[cell]
 				if n == nil {
-					n = &note{state: f.State}
+					n = &cellNote{state: f.State}
 					notes[cell] = n
 					order = append(order, cell)
 				}
@@ -304,6 +309,32 @@ func (m *marked) mark() error {
 			}
 		}
 	}
+	if m.r.Model == nil {
+		return order, notes
+	}
+	// Some programs show a hatched cell as a grey one; the note says what it means.
+	for _, row := range m.r.Model.RowsSetAside {
+		cell := m.rowCell(row)
+		if notes[cell] == nil {
+			notes[cell] = &cellNote{}
+			order = append(order, cell)
+		}
+		notes[cell].text = append(notes[cell].text, "SET ASIDE: "+wording.Printable(wording.Stop(row.Reason)))
+	}
+	return order, notes
+}
+
+// rowCell is where a row that was set aside is told.
+func (m *marked) rowCell(row audit.RowSetAside) string {
+	if row.Cell != nil {
+		return *row.Cell
+	}
+	return readers.Address(m.table.Columns[0].Index, row.Row)
+}
+
+// mark fills the cells that findings name and notes what is said of them.
+func (m *marked) mark() error {
+	order, notes := m.cellNotes()
 	theirs, err := m.notesThere()
 	if err != nil {
 		return err
@@ -315,8 +346,10 @@ func (m *marked) mark() error {
 			break
 		}
 		n := notes[cell]
-		if err := m.fill(m.sheet, cell, string(n.state)); err != nil {
-			return err
+		if n.state != "" {
+			if err := m.fill(m.sheet, cell, string(n.state)); err != nil {
+				return err
+			}
 		}
 		if len(n.text) == 0 {
 			continue

@@ -59,15 +59,20 @@ func (m *marked) freeName() string {
 }
 
 func (m *marked) sheetStyles() (s sheetStyles, err error) {
+	// A font is always named: without a name programs take one of their own.
+	font, err := m.file.GetDefaultFont()
+	if err != nil {
+		return s, err
+	}
 	top := &excelize.Alignment{Vertical: "top", WrapText: true}
 	for _, style := range []struct {
 		to    *int
 		style excelize.Style
 	}{
-		{&s.title, excelize.Style{Font: &excelize.Font{Bold: true, Size: 14}}},
-		{&s.head, excelize.Style{Font: &excelize.Font{Bold: true}, Border: []excelize.Border{{Type: "bottom", Style: 1, Color: "000000"}}}},
+		{&s.title, excelize.Style{Font: &excelize.Font{Family: font, Bold: true, Size: 14}}},
+		{&s.head, excelize.Style{Font: &excelize.Font{Family: font, Size: 11, Bold: true}, Border: []excelize.Border{{Type: "bottom", Style: 1, Color: "000000"}}}},
 		{&s.wrap, excelize.Style{Alignment: top}},
-		{&s.link, excelize.Style{Alignment: top, Font: &excelize.Font{Underline: "single", Color: "0563C1"}}},
+		{&s.link, excelize.Style{Alignment: top, Font: &excelize.Font{Family: font, Size: 11, Underline: "single", Color: "0563C1"}}},
 	} {
 		if *style.to, err = m.file.NewStyle(&style.style); err != nil {
 			return s, err
@@ -120,7 +125,7 @@ func (m *marked) listVerdict(s sheetStyles) error {
 		return err
 	}
 	file, read := readWords(r)
-	lines := []string{wording.Sentence(r.Verdict.Summary), file + ": " + read}
+	lines := []string{wording.Sentence(r.Verdict.Summary), file + ": " + read + " SHA-256 " + r.Input.SHA256 + "."}
 	if r.Model != nil {
 		lines = append(lines, wording.Sentence(modelWords(r)), scope)
 	}
@@ -184,7 +189,7 @@ func (m *marked) listFinding(s sheetStyles, f *audit.Finding) error {
 	if err := m.fill(m.first, readers.Address(0, m.row), state); err != nil {
 		return err
 	}
-	if err := m.file.SetRowHeight(m.first, m.row, max(height(said, 72), height(todo, 72))); err != nil {
+	if err := m.file.SetRowHeight(m.first, m.row, max(height(said, 80), height(todo, 80))); err != nil {
 		return err
 	}
 	for k, place := range f.Where {
@@ -245,11 +250,7 @@ func (m *marked) listSetAside(s sheetStyles) error {
 		if err := m.put(s.wrap, "", "", row.Reason); err != nil {
 			return err
 		}
-		to := readers.Address(m.table.Columns[0].Index, row.Row)
-		if row.Cell != nil {
-			to = *row.Cell
-		}
-		if err := m.link(s, readers.Address(0, m.row), to, fmt.Sprintf("row %d", row.Row)); err != nil {
+		if err := m.link(s, readers.Address(0, m.row), m.rowCell(row), fmt.Sprintf("row %d", row.Row)); err != nil {
 			return err
 		}
 	}
@@ -269,14 +270,14 @@ func (m *marked) listPasses(s sheetStyles) error {
 		if err := m.put(s.wrap, string(f.State), f.Rule, message(f)); err != nil {
 			return err
 		}
-		if err := m.file.SetRowHeight(m.first, m.row, height(message(f), 72)); err != nil {
+		if err := m.file.SetRowHeight(m.first, m.row, height(message(f), 80)); err != nil {
 			return err
 		}
 	}
 	return nil
 }
 
-// listKey says what the fills mean, what was left out and what was read.
+// listKey says what the fills mean, and what was left out.
 func (m *marked) listKey(s sheetStyles) error {
 	m.row++
 	if err := m.put(s.head, "Fill", "", "Meaning"); err != nil {
@@ -296,7 +297,7 @@ func (m *marked) listKey(s sheetStyles) error {
 		}
 	}
 	m.row++
-	for _, line := range append(m.remark, "SHA-256 of the input: "+m.r.Input.SHA256) {
+	for _, line := range m.remark {
 		if err := m.wide(s.wrap, line); err != nil {
 			return err
 		}

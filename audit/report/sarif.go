@@ -203,7 +203,7 @@ func sarifRuleOf(rule *rules.Rule) sarifRule {
 		help = append(help, "To do: "+remedy.Name+": "+wording.Stop(remedy.Do))
 	}
 	return sarifRule{
-		ID: rule.Name, Short: sarifText{rule.Asks}, Full: sarifText{wording.Sentence(rule.Why)}, Help: sarifText{strings.Join(help, "\n")},
+		ID: rule.Name, Short: sarifMessage(rule.Asks), Full: sarifMessage(wording.Sentence(rule.Why)), Help: sarifMessage(strings.Join(help, "\n")),
 	}
 }
 

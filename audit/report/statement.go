@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"io"
+	"slices"
 	"strings"
 
 	"footing/audit"
@@ -112,7 +113,7 @@ func (s *statement) checked(version string) {
 			by[f.State] = append(by[f.State], f.Rule)
 		}
 	}
-	s.say("footing %s audited it by %s", version, wording.Count(asked, "check"))
+	s.say("An audit by footing %s made %s", version, wording.Count(asked, "check"))
 	if c := s.r.Calibration; c != nil && len(c.Rules) > 0 {
 		how := fmt.Sprintf("%d simulated tables of this design, seed %d", c.Replicates, c.Seed)
 		if c.Method == "formulas" {
@@ -143,13 +144,16 @@ func (s *statement) found() {
 		if !f.IsOpen() {
 			continue
 		}
-		s.say("%s (%s): %s", capital(f.Rule), f.State, message(f))
+		s.say("%q (%s): %s", f.Rule, f.State, message(f))
 		if f.Waived != nil {
 			s.say("This was accepted: %s", *f.Waived)
 		}
 		for _, remedy := range f.Remedies {
 			if remedy.Tried && remedy.Under != "" {
-				trials = append(trials, fmt.Sprintf("%s, %s", remedy.Under, s.trial(remedy)))
+				// What follows from another finding often has the same remedy.
+				if told := remedy.Under + ", " + s.trial(remedy); !slices.Contains(trials, told) {
+					trials = append(trials, told)
+				}
 			}
 		}
 	}
@@ -163,10 +167,6 @@ func (s *statement) found() {
 	}
 	s.say("Nothing was corrected or left out")
 }
-
-// capital is a rule's name at the start of a sentence; names are what users
-// type, so they keep their small letter within quotes.
-func capital(rule string) string { return `"` + rule + `"` }
 
 // asItStands gives every answer of the original fit.
 func (s *statement) asItStands() string {
@@ -227,7 +227,7 @@ func (s *statement) answers() {
 		return all
 	}
 	if len(s.r.Verdict.Quote) > 0 {
-		s.sentences = append(s.sentences, few(s.r.Verdict.Quote)...)
+		s.say("What may be quoted: %s", strings.Join(few(s.r.Verdict.Quote), " "))
 	}
 	if no := denied(s.r); len(no) > 0 {
 		s.say("Not to be quoted: %s", strings.Join(few(no), " "))
