@@ -62,7 +62,7 @@ type junitSkipped struct {
 // JUnit writes the result as tests of a build: a suite for the table, a case for
 // each rule, a failure for each finding at or above failOn.
 func JUnit(w io.Writer, r *audit.Result, failOn, version string) error {
-	suite := junitSuite{Name: wording.Printable(tableName(r)), Out: strings.Join(junitAnswers(r), "\n")}
+	suite := junitSuite{Name: wording.Printable(tableName(r)), Out: strings.Join(answerLines(r), "\n")}
 	for _, p := range []junitProperty{
 		{"verdict", grade(r)},
 		{"summary", wording.Printable(wording.Stop(r.Verdict.Summary))},
@@ -103,21 +103,6 @@ func JUnit(w io.Writer, r *audit.Result, failOn, version string) error {
 func tableName(r *audit.Result) string {
 	file, _ := readWords(r)
 	return file
-}
-
-// junitAnswers is what the log of a build shows of the whole table.
-func junitAnswers(r *audit.Result) []string {
-	lines := []string{grade(r) + ": " + wording.Stop(r.Verdict.Summary)}
-	for _, s := range r.Verdict.Quote {
-		lines = append(lines, "Quote: "+s)
-	}
-	for _, s := range denied(r) {
-		lines = append(lines, "Do not quote: "+s)
-	}
-	for i := range lines {
-		lines[i] = wording.Printable(lines[i])
-	}
-	return lines
 }
 
 func junitDetails(f *audit.Finding) []string {

@@ -35,6 +35,8 @@ type sarifRun struct {
 	Tool        sarifTool         `json:"tool"`
 	Invocations []sarifInvocation `json:"invocations"`
 	Artifacts   []sarifArtifact   `json:"artifacts"`
+	Language    string            `json:"language"`
+	Newlines    []string          `json:"newlineSequences"`
 	ColumnKind  string            `json:"columnKind"` // 3.14.17
 	Results     []sarifResult     `json:"results"`
 	Properties  sarifProperties   `json:"properties"`
@@ -45,9 +47,10 @@ type sarifTool struct {
 }
 
 type sarifDriver struct {
-	Name    string      `json:"name"`
-	Version string      `json:"version"`
-	Rules   []sarifRule `json:"rules"`
+	Name     string      `json:"name"`
+	Version  string      `json:"version"`
+	Language string      `json:"language"`
+	Rules    []sarifRule `json:"rules"`
 }
 
 type sarifText struct {
@@ -140,17 +143,19 @@ const mostLocations = 100
 // notifications of the run, since many readers take every result for an alert.
 // spans, which may be nil, finds the characters of a field in a text file.
 func SARIF(w io.Writer, r *audit.Result, version string, spans func([]readers.Pos) map[readers.Pos]readers.Span) error {
-	s := sarif{r: r, uri: fileURI(r.Input.File)}
+	s := sarifWriter{r: r, uri: fileURI(r.Input.File)}
 	if spans != nil {
 		s.spans = spans(s.fields())
 	}
 	run := sarifRun{
-		Tool:       sarifTool{Driver: sarifDriver{Name: "footing", Version: version, Rules: []sarifRule{}}},
+		Tool:       sarifTool{Driver: sarifDriver{Name: "footing", Version: version, Language: "en-US", Rules: []sarifRule{}}},
+		Language:   "en-US",
+		Newlines:   []string{"\r\n", "\n", "\r"}, // as readers takes line ends
 		ColumnKind: "unicodeCodePoints", Results: []sarifResult{},
 		Artifacts:  []sarifArtifact{{Location: sarifArtifactLocation{s.uri}, Hashes: map[string]string{"sha-256": r.Input.SHA256}}},
 		Properties: sarifProperties{Verdict: string(r.Verdict.State), Summary: r.Verdict.Summary, Quote: r.Verdict.Quote, DoNotQuote: denied(r)},
 	}
-	told := []sarifNotification{{Level: "none", Message: sarifMessage(strings.Join(junitAnswers(r), "\n"))}}
+	told := []sarifNotification{{Level: "none", Message: sarifMessage(answerLines(r)...)}}
 	index := map[string]int{}
 	for _, rule := range rules.All {
 		if !slices.ContainsFunc(r.Findings, func(f audit.Finding) bool { return f.Rule == rule.Name }) {
@@ -185,17 +190,16 @@ func sarifLevel(s audit.State) string {
 	return "none"
 }
 
-// sarifMessage makes a message in which nothing is a link or a placeholder
-// (3.11.5, 3.11.6).
-func sarifMessage(text string) sarifText {
-	lines := strings.Split(text, "\n")
+// sarifMessage makes a message of lines in which nothing is a link or a
+// placeholder (3.11.5, 3.11.6).
+func sarifMessage(lines ...string) sarifText {
 	for i, line := range lines {
 		lines[i] = sarifEscape.Replace(wording.Printable(line))
 	}
 	return sarifText{strings.Join(lines, "\n")}
 }
 
-var sarifEscape = strings.NewReplacer(`\`, `\\`, "[", `\[`, "]", `\]`, "{", "{{", "}", "}}")
+var sarifEscape = strings.NewReplacer("[", `\[`, "]", `\]`, "{", "{{", "}", "}}")
 
 func sarifRuleOf(rule *rules.Rule) sarifRule {
 	help := []string{"Method: " + wording.Sentence(rule.Method), "Breached: " + wording.Sentence(rule.Limit)}
@@ -203,18 +207,18 @@ func sarifRuleOf(rule *rules.Rule) sarifRule {
 		help = append(help, "To do: "+remedy.Name+": "+wording.Stop(remedy.Do))
 	}
 	return sarifRule{
-		ID: rule.Name, Short: sarifMessage(rule.Asks), Full: sarifMessage(wording.Sentence(rule.Why)), Help: sarifMessage(strings.Join(help, "\n")),
+		ID: rule.Name, Short: sarifMessage(rule.Asks), Full: sarifMessage(wording.Sentence(rule.Why)), Help: sarifMessage(help...),
 	}
 }
 
-// sarif holds what the results of one run share.
-type sarif struct {
+// sarifWriter holds what the results of one run share.
+type sarifWriter struct {
 	r     *audit.Result
 	uri   string
 	spans map[readers.Pos]readers.Span
 }
 
-func (s *sarif) result(f *audit.Finding, level string, index int) sarifResult {
+func (s *sarifWriter) result(f *audit.Finding, level string, index int) sarifResult {
 	text := []string{message(f)}
 	if n := len(f.Where); n > mostLocations {
 		text = append(text, "There are "+wording.Count(n, "place")+"; the first "+wording.Count(mostLocations, "place")+" are given.")
@@ -223,7 +227,7 @@ func (s *sarif) result(f *audit.Finding, level string, index int) sarifResult {
 		text = append(text, "To do: "+words)
 	}
 	result := sarifResult{
-		RuleID: f.Rule, RuleIndex: index, Level: level, Message: sarifMessage(strings.Join(text, "\n")),
+		RuleID: f.Rule, RuleIndex: index, Level: level, Message: sarifMessage(text...),
 		Locations: []sarifLocation{}, Fingerprints: map[string]string{"footing/1": fingerprint(f)},
 	}
 	for k, place := range f.Where {
@@ -243,7 +247,7 @@ func (s *sarif) result(f *audit.Finding, level string, index int) sarifResult {
 
 // location is a place as line and characters for a text file, and as a cell for
 // both kinds of file.
-func (s *sarif) location(place audit.Place) sarifLocation {
+func (s *sarifWriter) location(place audit.Place) sarifLocation {
 	l := sarifLocation{Physical: sarifPhysical{Artifact: sarifArtifactLocation{s.uri}}}
 	pos := s.position(place)
 	if s.r.Input.Sheet == nil && pos.Row > 0 {
@@ -274,7 +278,7 @@ func (s *sarif) location(place audit.Place) sarifLocation {
 
 // position is where a place is in the file; a whole column is where its header
 // stands.
-func (s *sarif) position(place audit.Place) readers.Pos {
+func (s *sarifWriter) position(place audit.Place) readers.Pos {
 	var p readers.Pos
 	switch {
 	case place.Cell != nil:
@@ -297,7 +301,7 @@ func (s *sarif) position(place audit.Place) readers.Pos {
 }
 
 // fields lists the positions of all places that results will have.
-func (s *sarif) fields() []readers.Pos {
+func (s *sarifWriter) fields() []readers.Pos {
 	var all []readers.Pos
 	for k := range s.r.Findings {
 		f := &s.r.Findings[k]

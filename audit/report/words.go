@@ -131,3 +131,19 @@ func cut(text string, most int) string {
 	half := most / 2
 	return fmt.Sprintf("%s ... %s (%d characters in all)", string(runes[:half]), string(runes[len(runes)-half:]), len(runes))
 }
+
+// answerLines are the verdict and the answers as the log of a build shows them,
+// a line each.
+func answerLines(r *audit.Result) []string {
+	lines := []string{grade(r) + ": " + wording.Stop(r.Verdict.Summary)}
+	for _, s := range r.Verdict.Quote {
+		lines = append(lines, "Quote: "+s)
+	}
+	for _, s := range denied(r) {
+		lines = append(lines, "Do not quote: "+s)
+	}
+	for i := range lines {
+		lines[i] = wording.Printable(lines[i])
+	}
+	return lines
+}
