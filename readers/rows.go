@@ -160,7 +160,7 @@ func (b *body) hasOurShape(a, end int, marks []uint8) bool {
 		if b.g.sheet == "" && b.header >= 0 && b.g.fields.at(r) != b.g.fields.at(b.header) {
 			continue
 		}
-		if m&rowNumber != 0 && m&rowText == 0 && (m&rowLabel != 0 || len(b.must) == 0) {
+		if m&rowNumber != 0 && m&rowText == 0 && (m&rowLabel != 0 || len(b.must) == 0) || b.isLabelled(r) {
 			good++
 		}
 	}
@@ -169,6 +169,17 @@ func (b *body) hasOurShape(a, end int, marks []uint8) bool {
 		return false
 	}
 	return 2*good >= rows && good > 0
+}
+
+// isLabelled tells whether a row has all the labels that nearly every row has, and
+// they look like those of other rows. Its numbers may be missing or faulty.
+func (b *body) isLabelled(r int) bool {
+	for _, c := range b.must {
+		if class(b.g.seek(c).kind(r)) != asWord || !b.looksLikeLabel(c, r) {
+			return false
+		}
+	}
+	return len(b.must) > 0
 }
 
 // startsAgain tells whether a run starts with our header once more.

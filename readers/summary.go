@@ -92,6 +92,8 @@ type figures struct {
 	all   []running // one per number column, over the table so far
 	block []running // since the last summary
 	next  int       // first row that is not in the sums yet
+	// The last summary and the column of its word.
+	last, lastColumn int
 }
 
 type running struct {
@@ -112,7 +114,7 @@ func (r *running) add(v float64) {
 }
 
 func newFigures(b *body) *figures {
-	return &figures{b: b, all: make([]running, len(b.numeric)), block: make([]running, len(b.numeric)), next: b.first}
+	return &figures{b: b, all: make([]running, len(b.numeric)), block: make([]running, len(b.numeric)), next: b.first, last: -2}
 }
 
 // catchUp sums the rows above r that are kept.
@@ -134,35 +136,70 @@ func (f *figures) catchUp(r int) {
 // which. It must say so by a word in a label column or agree in its numbers; a word
 // alone counts where a label that every row has is missing, or at the end.
 func (f *figures) summary(r int, m uint8, last bool) string {
-	word := f.b.rowWord(r, m)
-	if word == "" {
+	b := f.b
+	column, word := b.rowWord(r, m)
+	switch {
+	case word == "":
 		word = f.byArithmetic(r, m)
-	} else if m&rowUnnamed == 0 && !f.agrees(r, word) && !(last && f.b.onceInColumn(r)) {
+	case f.agrees(r, word):
+	case m&rowUnnamed != 0 && !b.isLevel(column, r):
+	case last && b.closesTable(column, r):
+	case f.last == r-1 && !b.g.isGap(r) && f.lastColumn == column:
+		// The deviations under the means, and the like.
+	default:
 		word = ""
 	}
 	if word != "" {
 		f.startBlock(r)
+		f.last, f.lastColumn = r, column
 	}
 	return word
 }
 
-// rowWord gives the word for a sum or mean in a record. A single letter, such as n,
-// is one only where another label is missing: it may be the name of a group.
-func (b *body) rowWord(r int, m uint8) string {
-	if m&rowWord == 0 {
-		return ""
+// closesTable tells whether the word for a sum stands nowhere else in the first
+// column of labels, and is long enough to be no label by accident: sd may follow sc.
+func (b *body) closesTable(column, r int) bool {
+	s := b.g.seek(column)
+	text := s.words.text(s.word(r))
+	return column == b.labels[0] && (len(text) > 3 || equalFold(text, "sum")) && b.wordCount(column, s.word(r)) == 1
+}
+
+// isLevel tells whether the word for a sum stands in two or more rows that have all
+// their labels: then it is a group's name, such as max among levels of a dose.
+func (b *body) isLevel(column, r int) bool {
+	s := b.g.seek(column)
+	word, n := s.word(r), 0
+	if b.wordCount(column, word) < 2 {
+		return false
 	}
-	for _, c := range b.layout.columns {
+	for k := b.first; k < b.end; k++ {
+		if s.kind(k)&markWord != 0 && s.word(k) == word && b.marks[k]&rowUnnamed == 0 {
+			if n++; n == 2 {
+				return true
+			}
+		}
+	}
+	return false
+}
+
+// rowWord gives the word for a sum or mean in a record, and its column. A single
+// letter, such as n, is one only where another label is missing: it may be the name
+// of a group.
+func (b *body) rowWord(r int, m uint8) (column int, word string) {
+	if m&rowWord == 0 {
+		return -1, ""
+	}
+	for _, c := range b.labels {
 		s := b.g.seek(c)
 		if k := s.kind(r); class(k) != asWord || k&markWord == 0 {
 			continue
 		}
 		text := s.words.text(s.word(r))
 		if w := summaryName(text); w != "" && (len(text) > 1 || m&rowUnnamed != 0) {
-			return w
+			return c, w
 		}
 	}
-	return ""
+	return -1, ""
 }
 
 // agrees tells whether the numbers of a row are what its word says of the rows
@@ -242,22 +279,6 @@ func (b *body) endsTable(r int) bool {
 		return b.g.isGap(k)
 	}
 	return true
-}
-
-// onceInColumn tells whether the summary's word stands nowhere else in its column,
-// so that it is no group's name.
-func (b *body) onceInColumn(r int) bool {
-	for _, c := range b.labels {
-		s := b.g.seek(c)
-		if k := s.kind(r); class(k) != asWord || k&markWord == 0 {
-			continue
-		}
-		text := s.words.text(s.word(r))
-		if summaryName(text) != "" {
-			return len(text) > 2 && b.wordCount(c, s.word(r)) == 1
-		}
-	}
-	return false
 }
 
 // startBlock begins a new block of rows after a summary.

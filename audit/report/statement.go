@@ -62,10 +62,10 @@ func (s *statement) fitted() {
 	}
 	switch {
 	case len(m.Predictors) == 0:
-		s.say("The means of %s were compared by least squares%s on %d of the %s of %s", withUnit(s.r, m.Response), s.groups(), m.RowsUsed, wording.Count(s.r.Input.Rows, "row"), file)
+		s.say("The means of %s were compared by least squares%s on %s of %s", withUnit(s.r, m.Response), s.groups(), s.rows(), file)
 	default:
-		s.say("A straight line of %s over %s was fitted by least squares%s%s to %d of the %s of %s", withUnit(s.r, m.Response), withUnit(s.r, m.Predictors[0]),
-			s.groups(), s.additive(), m.RowsUsed, wording.Count(s.r.Input.Rows, "row"), file)
+		s.say("A straight line of %s over %s was fitted by least squares%s%s to %s of %s", withUnit(s.r, m.Response), withUnit(s.r, m.Predictors[0]),
+			s.groups(), s.additive(), s.rows(), file)
 	}
 	if len(m.RowsSetAside) == 0 {
 		s.say("No row was set aside")
@@ -77,6 +77,14 @@ func (s *statement) fitted() {
 	}
 	s.say("%s %s set aside, since a value that the model needs is missing or cannot be used: %s; no figures with them exist",
 		wording.Count(len(m.RowsSetAside), "row"), verb, wording.Some(setAside(s.r), toldInStatement))
+}
+
+func (s *statement) rows() string {
+	used, all := s.r.Model.RowsUsed, s.r.Input.Rows
+	if used == all {
+		return fmt.Sprintf("all %s", wording.Count(all, "row"))
+	}
+	return fmt.Sprintf("%d of the %s", used, wording.Count(all, "row"))
 }
 
 func (s *statement) groups() string {
@@ -104,12 +112,17 @@ func (s *statement) additive() string {
 func (s *statement) checked(version string) {
 	by := map[audit.State][]string{}
 	asked := 0
+	var limits []string // a pass of theirs may still limit what is quoted
 	for k := range s.r.Findings {
 		f := &s.r.Findings[k]
 		if f.State != audit.Skip {
 			asked++
 		}
-		if !f.IsOpen() {
+		switch {
+		case f.IsOpen():
+		case f.OnlyLimits && f.State == audit.Pass:
+			limits = append(limits, f.Rule)
+		default:
 			by[f.State] = append(by[f.State], f.Rule)
 		}
 	}
@@ -127,6 +140,9 @@ func (s *statement) checked(version string) {
 	if names := by[audit.Thin]; len(names) > 0 {
 		s.say("Nothing was found by %s either, but these rows could hardly have shown it", wording.List(names))
 	}
+	if len(limits) > 0 {
+		s.say("What may not be quoted in any case was looked for by %s", wording.List(limits))
+	}
 	if c := s.r.Calibration; c != nil && c.Missed != nil {
 		s.say("These rows would have missed %s", *c.Missed)
 	}
@@ -139,11 +155,13 @@ func (s *statement) checked(version string) {
 // stand and under each remedy that was tried.
 func (s *statement) found() {
 	var trials []string
+	open := false
 	for k := range s.r.Findings {
 		f := &s.r.Findings[k]
 		if !f.IsOpen() {
 			continue
 		}
+		open = true
 		s.say("%q (%s): %s", f.Rule, f.State, message(f))
 		if f.Waived != nil {
 			s.say("This was accepted: %s", *f.Waived)
@@ -165,7 +183,9 @@ func (s *statement) found() {
 		}
 		return
 	}
-	s.say("Nothing was corrected or left out")
+	if open {
+		s.say("No remedy was tried, and nothing was corrected")
+	}
 }
 
 // asItStands gives every answer of the original fit.
@@ -229,8 +249,11 @@ func (s *statement) answers() {
 	if len(s.r.Verdict.Quote) > 0 {
 		s.say("What may be quoted: %s", strings.Join(few(s.r.Verdict.Quote), " "))
 	}
-	if no := denied(s.r); len(no) > 0 {
+	if no := s.r.Verdict.DoNotQuote; len(no) > 0 {
 		s.say("Not to be quoted: %s", strings.Join(few(no), " "))
+	}
+	if s.r.Difference == nil && s.r.NotCompared != nil {
+		s.say("No difference between groups is given (%s)", *s.r.NotCompared)
 	}
 	s.sentences = append(s.sentences, scope)
 }

@@ -64,7 +64,7 @@ type Target struct {
 
 	Reliability map[string]float64 // of the predictor, by group
 	LeaveOut    int                // position of a further predictor or covariate
-	Subjects    []int              // of each used row, where they are not those of the design
+	Subjects    []int              // of each used row: the levels of replicated predictor values
 }
 
 // NotApplicable says why a remedy cannot be tried on these rows.
