@@ -63,13 +63,11 @@ type junitSkipped struct {
 // each rule, a failure for each finding at or above failOn.
 func JUnit(w io.Writer, r *audit.Result, failOn, version string) error {
 	suite := junitSuite{Name: wording.Printable(tableName(r)), Out: strings.Join(answerLines(r), "\n")}
-	for _, p := range []junitProperty{
+	suite.Properties = []junitProperty{
 		{"verdict", grade(r)},
 		{"summary", wording.Printable(wording.Stop(r.Verdict.Summary))},
 		{"sha256", r.Input.SHA256},
 		{"footing", version},
-	} {
-		suite.Properties = append(suite.Properties, p)
 	}
 	for k := range r.Findings {
 		f := &r.Findings[k]
