@@ -24,6 +24,10 @@ type Remedy struct {
 	Edit   func(Start) (*model.Design, error)
 	Answer func(Start) (model.Answers, error)
 
+	// Whole marks a remedy that looks at all rows and at no target: one trial
+	// answers for every rule that asks for it.
+	Whole bool
+
 	// Slow marks a remedy of thousands of refits, left out of large tables.
 	Slow bool
 }
