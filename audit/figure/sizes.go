@@ -1,0 +1,90 @@
+package figure
+
+import (
+	"fmt"
+	"math"
+
+	"footing/audit"
+	"footing/rules/wording"
+)
+
+// drawSizes draws the size of the residuals against the predictor.
+func drawSizes(s *sheet) bool {
+	d := s.drawing
+	if math.IsNaN(d.Limit) {
+		return false
+	}
+	means := d.Predictor.Name == ""
+	s.title = "How far rows lie from their line, along the predictor"
+	l := layout{xTitle: title(d.Predictor), yTitle: "distance from the line, in residual SD"}
+	if means {
+		s.title = "How far rows lie from their mean, group by group"
+		l.x, l.xTitle, l.yTitle = span{-0.6, float64(len(d.Groups)) - 0.4}, "group", "distance from the mean, in residual SD"
+		for g, label := range d.Groups {
+			l.xTicks, l.xWords = append(l.xTicks, float64(g)), append(l.xWords, short(label, 14))
+		}
+	} else {
+		x := newSpan()
+		for _, p := range d.Points {
+			x.take(p.X)
+		}
+		l.x = x.room()
+	}
+	y := newSpan()
+	y.take(0)
+	for _, p := range d.Points {
+		y.take(math.Abs(p.Scaled))
+	}
+	if d.Size != nil {
+		y.take(d.Size.High...)
+	}
+	l.y = y.room()
+	l.y.least = 0
+	l.top = s.keysUnlessMeans(means)
+	l.height = 330
+	s.height = l.top + l.height
+	f := s.frame(l)
+	s.band(f, d.Size)
+	spread := jitter(means)
+	marked := s.scatter(f, func(p audit.DrawnRow) (float64, float64) {
+		if means {
+			return f.x.at(float64(p.Group) + spread(p.Row)), f.y.at(math.Abs(p.Scaled))
+		}
+		return f.x.at(p.X), f.y.at(math.Abs(p.Scaled))
+	})
+	s.groupSizes(f, means)
+	s.seen(f, d.Size)
+	s.say("the mean distance of rows from their line is 0.8 SD in a sound table, wherever the predictor stands")
+	s.sayBand(d.Size, "place", " SD")
+	if len(d.Groups) > 1 && len(d.Groups) <= inks {
+		var all []string
+		for g, label := range d.Groups {
+			if !math.IsNaN(d.Sizes[g]) {
+				all = append(all, fmt.Sprintf("%s %s", label, wording.Figure(d.Sizes[g], 2)))
+			}
+		}
+		s.say("mean distance by group, drawn as bars: %s SD", wording.List(all))
+	}
+	s.sayMarked(marked)
+	s.sayThinned()
+	return true
+}
+
+// groupSizes draws the mean size in each group over its own range.
+func (s *sheet) groupSizes(f frame, means bool) {
+	if len(s.drawing.Groups) < 2 || s.plain() || means {
+		return
+	}
+	for _, line := range s.drawing.Lines {
+		v := s.drawing.Sizes[line.Group]
+		if math.IsNaN(v) {
+			continue
+		}
+		dash := ""
+		if d := dashes[line.Group]; d != "" {
+			dash = fmt.Sprintf(` stroke-dasharray="%s"`, d)
+		}
+		y := f.y.at(v)
+		fmt.Fprintf(&s.body, `<path class="g%d l"%s d="M%s %sH%s"/>`, line.Group, dash, num(f.x.at(line.FromX)), num(y), num(f.x.at(line.ToX)))
+	}
+}
