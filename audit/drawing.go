@@ -25,18 +25,18 @@ type Drawing struct {
 	Lines     []DrawnLine
 	SD        float64 // residual standard deviation
 
-	Inside   float64    // share of sound tables that stay inside each band
-	Limit    float64    // that no residual passes in this share of sound tables
-	Beyond   int        // residuals that pass it here
-	Trend    *DrawnBand // means of residuals along the fitted values; nil for too few rows
-	Size     *DrawnBand // means of their size along the predictor, in residual SD
-	Scores   *DrawnBand // sorted residuals over normal scores, in residual SD
-	Sizes    []float64  // mean size of the residuals of each group, in residual SD
-	Pull     float64    // |DFBETAS| that no row passes in this share of sound tables
-	Pulled   []string   // the slopes that DrawnRow.Pulls runs over
-	Order    DrawnAxis  // without a name when no order is known
-	Sequence []int      // positions in Points, in order
-	Serial   *DrawnBand // means of residuals along the order
+	Inside    float64    // share of sound tables that stay inside each band
+	Limit     float64    // that no residual passes in this share of sound tables
+	Beyond    int        // residuals that pass it here
+	Trend     *DrawnBand // means of residuals along the fitted values; nil for too few rows
+	Size      *DrawnBand // means of their size along the predictor, in residual SD
+	Scores    *DrawnBand // sorted residuals over normal scores, in residual SD
+	Groupwise *DrawnBand // mean size in each group, in the order of Groups; nil for fewer than two
+	Pull      float64    // |DFBETAS| that no row passes in this share of sound tables
+	Pulled    []string   // the slopes that DrawnRow.Pulls runs over
+	Order     DrawnAxis  // without a name when no order is known
+	Sequence  []int      // positions in Points, in order
+	Serial    *DrawnBand // means of residuals along the order
 
 	Trials []DrawnTrial
 }
@@ -446,8 +446,7 @@ func (e *examination) drawBands(d *Drawing, scaled []float64) {
 			along[i] = float64(g)
 		}
 	}
-	size := newWindows(along, definedRows(scaled))
-	var serial windows
+	runs := runs{trend: trend, size: newWindows(along, definedRows(scaled)), groups: e.byGroup(scaled)}
 	if place := e.places(d); place != nil {
 		at := make([]float64, len(place))
 		var rows []int
@@ -457,27 +456,40 @@ func (e *examination) drawBands(d *Drawing, scaled []float64) {
 				rows = append(rows, i)
 			}
 		}
-		serial = newWindows(at, rows)
+		runs.serial = newWindows(at, rows)
 	}
 	if f.N() > rules.LargestSimulated {
-		e.closedBands(d, scaled, trend, size, serial)
+		e.closedBands(d, scaled, runs)
 	} else {
-		e.simulatedBands(d, scaled, trend, size, serial)
+		e.simulatedBands(d, scaled, runs)
 	}
 	for _, r := range scaled {
 		if math.Abs(r)*f.SD > d.Limit {
 			d.Beyond++
 		}
 	}
-	for g := range f.Design.Groups {
-		sum, n := 0.0, 0.0
-		for _, i := range f.Design.Members(g) {
-			if !math.IsNaN(scaled[i]) {
-				sum, n = sum+math.Abs(scaled[i]), n+1
-			}
+}
+
+// byGroup makes a window of each group; none when a group has no residual to
+// speak of or there is one group.
+func (e *examination) byGroup(scaled []float64) windows {
+	d := e.pass.Design
+	w := windows{rows: make([][]int, len(d.Groups))}
+	for i, g := range d.Group {
+		if !math.IsNaN(scaled[i]) {
+			w.rows[g] = append(w.rows[g], i)
 		}
-		d.Sizes = append(d.Sizes, sum/n)
 	}
+	for g, rows := range w.rows {
+		if len(rows) < leastWindow {
+			return windows{}
+		}
+		w.at = append(w.at, float64(g))
+	}
+	if len(d.Groups) < 2 {
+		return windows{}
+	}
+	return w
 }
 
 // drawnTables is how many sound tables the bands are found from.
@@ -488,7 +500,7 @@ func drawnTables(n int) int {
 	return 999
 }
 
-func (e *examination) simulatedBands(d *Drawing, scaled []float64, trend, size, serial windows) {
+func (e *examination) simulatedBands(d *Drawing, scaled []float64, w runs) {
 	f := e.pass.Fit
 	root := make([]float64, f.N())
 	for i, h := range f.Leverage {
@@ -497,7 +509,7 @@ func (e *examination) simulatedBands(d *Drawing, scaled []float64, trend, size, 
 	rows := definedRows(scaled)
 	places := scorePlaces(len(rows))
 	var largest []float64
-	var trends, sizes, serials, sorted [][]float64
+	var trends, sizes, groups, serials, sorted [][]float64
 	r, sizeOf, ordered := make([]float64, f.N()), make([]float64, f.N()), make([]float64, len(rows))
 	var sorter numeric.Sorter
 	calibrate.Sound(e.pass, "figure/sound", drawnTables(f.N()), func(s *rules.Sample) {
@@ -510,16 +522,18 @@ func (e *examination) simulatedBands(d *Drawing, scaled []float64, trend, size, 
 			ordered[k] = r[i]
 		}
 		largest = append(largest, most)
-		trends, sizes, serials = append(trends, trend.means(r)), append(sizes, size.means(sizeOf)), append(serials, serial.means(r))
+		trends, serials = append(trends, w.trend.means(r)), append(serials, w.serial.means(r))
+		sizes, groups = append(sizes, w.size.means(sizeOf)), append(groups, w.groups.means(sizeOf))
 		into := make([]float64, len(rows))
 		sorter.Sort(into, ordered, 1)
 		sorted = append(sorted, at(into, places))
 	})
 	slices.Sort(largest)
 	d.Limit = largest[reached(len(largest), d.Inside)] * f.SD
-	d.Trend = trend.band(trends, scaled, d.Inside, f.SD)
-	d.Serial = serial.band(serials, scaled, d.Inside, f.SD)
-	d.Size = size.band(sizes, absolute(scaled), d.Inside, 1)
+	d.Trend = w.trend.band(trends, scaled, d.Inside, f.SD)
+	d.Serial = w.serial.band(serials, scaled, d.Inside, f.SD)
+	d.Size = w.size.band(sizes, absolute(scaled), d.Inside, 1)
+	d.Groupwise = w.groups.band(groups, absolute(scaled), d.Inside, 1)
 	d.Scores = scoreBand(sorted, scaled, places, d.Inside)
 }
 
@@ -574,16 +588,18 @@ func scoreBand(tables [][]float64, scaled []float64, places []int, inside float6
 
 // closedBands does without simulation of residuals: in a large table they are
 // all but independent.
-func (e *examination) closedBands(d *Drawing, scaled []float64, trend, size, serial windows) {
+func (e *examination) closedBands(d *Drawing, scaled []float64, w runs) {
 	f := e.pass.Fit
 	outside := 1 - d.Inside
 	df := float64(f.DF)
 	t := numeric.StudentQuantile(1-outside/2/float64(f.N()), df-1)
 	d.Limit = f.SD * t * math.Sqrt(df/(df-1+t*t))
-	d.Trend = trend.closedBand(scaled, 0, 1, outside, f.SD)
-	d.Serial = serial.closedBand(scaled, 0, 1, outside, f.SD)
+	d.Trend = w.trend.closedBand(scaled, 0, 1, outside, f.SD)
+	d.Serial = w.serial.closedBand(scaled, 0, 1, outside, f.SD)
 	// |z| has mean sqrt(2/pi) and variance 1 - 2/pi.
-	d.Size = size.closedBand(absolute(scaled), math.Sqrt(2/math.Pi), math.Sqrt(1-2/math.Pi), outside, 1)
+	middle, spread := math.Sqrt(2/math.Pi), math.Sqrt(1-2/math.Pi)
+	d.Size = w.size.closedBand(absolute(scaled), middle, spread, outside, 1)
+	d.Groupwise = w.groups.closedBand(absolute(scaled), middle, spread, outside, 1)
 	n := len(definedRows(scaled))
 	places := scorePlaces(n)
 	var tables [][]float64
@@ -644,6 +660,9 @@ func envelope(tables [][]float64, inside float64) (low, high []float64) {
 	}
 	return low, high
 }
+
+// runs are the windows whose means are drawn.
+type runs struct{ trend, size, groups, serial windows }
 
 // windows are runs of rows that are neighbours along some values.
 type windows struct {

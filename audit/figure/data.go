@@ -23,8 +23,8 @@ func drawData(s *sheet) bool {
 			l.xTitle = *g
 		}
 		l.x = span{-0.6, float64(len(d.Groups)) - 0.4}
-		for g, label := range d.Groups {
-			l.xTicks, l.xWords = append(l.xTicks, float64(g)), append(l.xWords, short(label, 14))
+		for g := range d.Groups {
+			l.xTicks, l.xWords = append(l.xTicks, float64(g)), append(l.xWords, short(s.group(g), 14))
 		}
 		s.title = "Every row, with the mean of each group"
 	} else {
@@ -41,8 +41,8 @@ func drawData(s *sheet) bool {
 	l.y = s.heights()
 	labelled := len(d.Groups) > 1 && !means && !s.plain()
 	if labelled {
-		for _, label := range d.Groups {
-			l.right = max(l.right, 14+textWidth(short(label, 13)))
+		for g := range d.Groups {
+			l.right = max(l.right, 14+textWidth(short(s.group(g), 13)))
 		}
 	}
 	l.top = s.keysUnlessMeans(means)
@@ -54,6 +54,9 @@ func drawData(s *sheet) bool {
 			s.drawLine(f, line, means)
 		}
 	})
+	if labelled {
+		s.nameLines(f)
+	}
 	spread := jitter(means)
 	marked := s.scatter(f, func(p audit.DrawnRow) (float64, float64) {
 		if means {
@@ -61,17 +64,27 @@ func drawData(s *sheet) bool {
 		}
 		return f.x.at(p.X), f.y.at(p.Y)
 	})
-	if labelled {
-		var labels []margin
-		for _, line := range d.Lines {
-			end := min(f.bottom, max(f.top, f.y.at(line.Y[len(line.Y)-1])))
-			labels = append(labels, margin{y: end, class: fmt.Sprintf("f%d b", line.Group), text: short(d.Groups[line.Group], 13)})
-		}
-		s.labelRight(f, labels)
-	}
 	aside := s.drawAside(f)
 	s.sayData(marked, aside, means)
 	return true
+}
+
+// nameLines writes the groups beside the ends of their lines, with an arrow
+// where a line ends outside of the frame.
+func (s *sheet) nameLines(f frame) {
+	var labels []margin
+	for _, line := range s.drawing.Lines {
+		end := f.y.at(line.Y[len(line.Y)-1])
+		text := short(s.group(line.Group), 13)
+		switch {
+		case end > f.bottom:
+			text = short(s.group(line.Group), 11) + " ↓"
+		case end < f.top:
+			text = short(s.group(line.Group), 11) + " ↑"
+		}
+		labels = append(labels, margin{y: min(f.bottom, max(f.top, end)), class: fmt.Sprintf("f%d b", line.Group), text: text})
+	}
+	s.labelRight(f, labels)
 }
 
 func (s *sheet) keysUnlessMeans(means bool) float64 {
@@ -189,7 +202,7 @@ func (s *sheet) sayData(marked []int, aside []audit.DrawnAside, means bool) {
 	if len(d.Groups) > 1 {
 		groups = " in " + wording.Count(len(d.Groups), "group")
 	}
-	s.say("%s of %s%s", what, wording.Count(d.Rows, "row"), groups)
+	s.say("%s%s: %s", wording.Count(d.Rows, "row"), groups, what)
 	confidence := wording.Percent(float64(s.result.Model.Confidence))
 	banded := false
 	for k, line := range d.Lines {
@@ -219,6 +232,8 @@ func (s *sheet) sayData(marked []int, aside []audit.DrawnAside, means bool) {
 	switch {
 	case banded && means:
 		s.say("bars are %s intervals of the means", confidence)
+	case banded && len(d.Lines) == 1:
+		s.say("the band is the %s interval of the line", confidence)
 	case banded && !s.plain():
 		s.say("each band is the %s interval of its line", confidence)
 	}
@@ -244,14 +259,14 @@ func asideWords(aside []audit.DrawnAside) string {
 func figure3(v float64) string { return wording.Figure(v, 3) }
 
 func (s *sheet) groupName(g int) string {
-	if label := s.drawing.Groups[g]; label != "" {
+	if label := s.group(g); label != "" {
 		return label
 	}
 	return "the mean"
 }
 
 func (s *sheet) ofGroup(g int) string {
-	if label := s.drawing.Groups[g]; label != "" {
+	if label := s.group(g); label != "" {
 		return " of " + label
 	}
 	return ""

@@ -6,6 +6,7 @@ package figure
 import (
 	"fmt"
 	"slices"
+	"strconv"
 
 	"footing/audit"
 	"footing/rules/wording"
@@ -181,6 +182,17 @@ func (s *sheet) sayMarked(rows []int) {
 // inside writes the share of sound tables: "95 of 100".
 func (s *sheet) inside() string {
 	return fmt.Sprintf("%s of 100", wording.Number(100*s.drawing.Inside))
+}
+
+// group is the label of a group; one that is a number gets the name of its
+// column.
+func (s *sheet) group(g int) string { return s.labelled(s.drawing.Groups[g]) }
+
+func (s *sheet) labelled(label string) string {
+	if _, err := strconv.ParseFloat(label, 64); err == nil && s.result.Model.Group != nil {
+		return *s.result.Model.Group + " " + label
+	}
+	return label
 }
 
 // unit is that of the response with a space before it.

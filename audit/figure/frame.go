@@ -235,6 +235,7 @@ func (c *canvas) labelRight(f frame, labels []margin) {
 	for k, l := range labels {
 		if at[k] >= f.top-apart {
 			c.text(f.right+7, at[k]+4.5, "start", l.class, l.text)
+			c.placed = append(c.placed, box{f.right + 5, at[k] - 8, width, at[k] + 8})
 		}
 	}
 }

@@ -3,6 +3,7 @@ package figure
 import (
 	"fmt"
 	"math"
+	"strings"
 
 	"footing/audit"
 	"footing/rules/wording"
@@ -32,6 +33,7 @@ func drawPower(s *sheet) bool {
 	}
 	s.line("h", x.at(0.5), 8, x.at(0.5), bottom)
 	s.text((left+right)/2, bottom+31, "middle", "q", "times in 100")
+	weak := false
 	for k, f := range checks {
 		y := 8 + row*float64(k)
 		power := float64(f.Power)
@@ -44,16 +46,19 @@ func drawPower(s *sheet) bool {
 		class, ink := "f0", "g0"
 		if power < 0.5 {
 			class, ink = "p", "g1"
+			weak = true
 		}
 		fmt.Fprintf(&s.body, `<rect class="%s %s" stroke-width="2" x="%s" y="%s" width="%s" height="14"/>`, class, ink, num(left), num(y+20), num(max(1, x.at(power)-left)))
 		s.text(right+10, y+32, "start", "b", fmt.Sprintf("%.0f", math.Round(100*power)))
 		breach := "its breach"
 		if f.Breach != nil {
-			breach = *f.Breach
+			breach = strings.TrimSuffix(*f.Breach, ",")
 		}
-		s.say("%s: %s caught %.0f times in 100", f.Rule, breach, math.Round(100*power))
+		s.say("%s: %s would have been caught %.0f times in 100", f.Rule, breach, math.Round(100*power))
 	}
-	s.say("hollow bars lie below one in two: such a pass says little")
+	if weak {
+		s.say("hollow bars lie below one in two: such a pass says little")
+	}
 	if c := s.result.Calibration; c != nil && c.CaughtLeast.Defined() {
 		s.say("by any of the checks a trouble worth acting on would have been caught %s to %s times in 100",
 			wording.To(100*float64(c.CaughtLeast), 0), wording.To(100*float64(c.CaughtMost), 0))

@@ -42,7 +42,7 @@ func drawPulls(s *sheet) bool {
 	for n, k := range order[:panels] {
 		of := ""
 		if d.Pulled[k] != "" {
-			of = " of " + d.Pulled[k]
+			of = " of " + s.labelled(d.Pulled[k])
 		}
 		bottom := ""
 		if n == panels-1 {
@@ -128,7 +128,10 @@ func (s *sheet) pullPanel(f frame, k int) (marked []int) {
 	for ink := range inks {
 		s.path(fmt.Sprintf("g%d t", ink), stems[ink])
 	}
-	top, _ := s.strongest(k)
+	top, by := s.strongest(k)
+	if math.Abs(by) < 0.03*(f.y.most-f.y.least) {
+		top = 0 // nothing to be seen at this scale
+	}
 	labels := 0
 	for _, p := range s.drawing.Points {
 		v := p.Pulls[k]
@@ -164,7 +167,7 @@ func drawOrder(s *sheet) bool {
 	}
 	top := s.keys(0)
 	s.height = top + 330
-	f := s.frame(layout{top: top, height: 330, x: x.room(), y: s.residualSpan(d.Serial), xTitle: "place in the order of " + d.Order.Name, yTitle: s.residualTitle()})
+	f := s.frame(layout{top: top, height: 330, x: x.room(), y: s.residualSpan(d.Serial), xTitle: "place in sequence, by " + d.Order.Name, yTitle: s.residualTitle()})
 	s.limits(f)
 	s.band(f, d.Serial)
 	for _, k := range d.Sequence {
@@ -175,9 +178,10 @@ func drawOrder(s *sheet) bool {
 	}
 	marked := s.scatter(f, func(p audit.DrawnRow) (float64, float64) { return f.x.at(p.Place), f.y.at(p.Residual) })
 	s.seen(f, d.Serial)
-	s.say("residuals of %s, in the order of %s", wording.Count(len(d.Sequence), "row"), d.Order.Name)
+	s.limitWords(f)
+	s.say("residuals of %s, one after the other by %s", wording.Count(len(d.Sequence), "row"), d.Order.Name)
 	s.sayLimit()
-	s.sayBand(d.Serial, "place", s.unit())
+	s.sayBand(d.Serial, "place")
 	s.sayMarked(marked)
 	s.sayThinned()
 	return true

@@ -3,7 +3,10 @@ package figure
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
+
+	"github.com/rivo/uniseg"
 
 	"footing/audit"
 	"footing/rules/wording"
@@ -35,7 +38,11 @@ func drawRemedies(s *sheet) bool {
 	if s.height < 40 {
 		return false
 	}
-	s.say("%s tried", verbCount(len(d.Trials), "remedy was", "remedies were"))
+	distinct := map[string]bool{}
+	for _, t := range d.Trials {
+		distinct[t.Words] = true
+	}
+	s.say("%s tried", verbCount(len(distinct), "remedy was", "remedies were"))
 	if changed == 0 {
 		s.say("no answer changes under any")
 	} else {
@@ -81,7 +88,9 @@ func (s *sheet) questions() []question {
 			seen[t.Words] = true
 			q.answers = append(q.answers, trialAnswer(t, group, name))
 		}
-		all = append(all, q)
+		if slices.ContainsFunc(q.answers, func(a answer) bool { return !math.IsNaN(a.value) }) {
+			all = append(all, q)
+		}
 	}
 	for k, slope := range r.Slopes {
 		if k >= inks {
@@ -89,7 +98,7 @@ func (s *sheet) questions() []question {
 		}
 		what := "slope"
 		if slope.Group != nil {
-			what += " of " + *slope.Group
+			what += " of " + s.labelled(*slope.Group)
 		}
 		first(slope.Group, what, slope.Slope, slope.CI)
 	}
@@ -97,7 +106,7 @@ func (s *sheet) questions() []question {
 		if k >= inks {
 			break
 		}
-		first(&r.Means[k].Group, "mean of "+mean.Group, mean.Mean, mean.CI)
+		first(&r.Means[k].Group, "mean of "+s.labelled(mean.Group), mean.Mean, mean.CI)
 	}
 	if r.Difference != nil {
 		all = append(all, s.differences())
@@ -150,17 +159,42 @@ func (s *sheet) slopeUnit() string {
 }
 
 const (
-	leadLetters = 22
-	step        = 21.0
+	leadLetters = 21
+	step        = 21.0 // of an answer with one line of words
+	lineHeight  = 14.5
 )
+
+// lines breaks the words of a remedy into two lines where one is too short.
+func lines(text string) []string {
+	if uniseg.StringWidth(wording.Printable(text)) <= leadLetters {
+		return []string{text}
+	}
+	first, rest := "", ""
+	for _, word := range strings.Fields(wording.Printable(text)) {
+		if rest == "" && (first == "" || uniseg.StringWidth(first+" "+word) <= leadLetters) {
+			first = strings.TrimSpace(first + " " + word)
+			continue
+		}
+		rest = strings.TrimSpace(rest + " " + word)
+	}
+	if rest == "" {
+		return []string{short(first, leadLetters)}
+	}
+	return []string{short(first, leadLetters), short(rest, leadLetters)}
+}
 
 func (s *sheet) leadWidth() float64 {
 	lead := textWidth("as it stands")
 	for _, t := range s.drawing.Trials {
-		lead = max(lead, textWidth(short(t.Words, leadLetters)))
+		for _, l := range lines(t.Words) {
+			lead = max(lead, textWidth(l))
+		}
 	}
 	return 10 + lead + 10
 }
+
+// heightOf is the room for one answer.
+func heightOf(a answer) float64 { return step + lineHeight*float64(len(lines(a.words))-1) }
 
 // block draws one question: a line for each remedy, on a scale of its own.
 func (s *sheet) block(top, lead float64, q question, changed int) (bottom float64, changes int) {
@@ -173,7 +207,10 @@ func (s *sheet) block(top, lead float64, q question, changed int) (bottom float6
 	}
 	s.text(10, top+14, "start", "b", short(heading, wholeLine))
 	y := top + 22
-	f := frame{box: box{left: lead, top: y, right: width - 78, bottom: y + step*float64(len(q.answers))}}
+	f := frame{box: box{left: lead, top: y, right: width - 78, bottom: y}}
+	for _, a := range q.answers {
+		f.bottom += heightOf(a)
+	}
 	ticks, labels := s.blockScale(&f, q)
 	last := math.Inf(-1)
 	for k, v := range ticks {
@@ -192,7 +229,8 @@ func (s *sheet) block(top, lead float64, q question, changed int) (bottom float6
 		s.line("h", x, f.top-2, x, f.bottom)
 	}
 	for k, a := range q.answers {
-		s.answerLine(f, y+step*(float64(k)+0.5), lead, a, q.p, k == 0)
+		s.answerLine(f, y+heightOf(a)/2, lead, a, q.p, k == 0)
+		y += heightOf(a)
 		if a.changes {
 			changed++
 		}
@@ -200,21 +238,27 @@ func (s *sheet) block(top, lead float64, q question, changed int) (bottom float6
 	return f.bottom + 26, changed
 }
 
-// blockScale chooses the scale of a question: intervals more than three times
-// as wide as the middle one are cut at the edge.
+// blockScale chooses the scale of a question. Intervals twelve times as wide as
+// the narrowest, or as the answers lie apart, are cut at the edge: beside them
+// nothing else could be seen.
 func (s *sheet) blockScale(f *frame, q question) (ticks []float64, labels []string) {
 	if q.p {
 		f.x = scale{math.Log10(0.00005), 0, f.left, f.right - 6}
 		return []float64{-4, -3, -2, -1, 0}, []string{"0.0001", "0.001", "0.01", "0.1", "1"}
 	}
 	x := newSpan()
-	base := q.answers[0]
 	narrow := math.Inf(1)
+	values := newSpan()
 	for _, a := range q.answers {
-		if w := a.high - a.low; !a.log && w > 0 {
+		if a.log {
+			continue
+		}
+		values.take(a.value)
+		if w := a.high - a.low; w > 0 {
 			narrow = min(narrow, w)
 		}
 	}
+	narrow = max(narrow, (values.most-values.least)/2)
 	for _, a := range q.answers {
 		if a.log {
 			continue
@@ -224,7 +268,6 @@ func (s *sheet) blockScale(f *frame, q question) (ticks []float64, labels []stri
 			x.take(a.low, a.high)
 		}
 	}
-	x.take(base.value)
 	wide := x.room()
 	if wide.least > 0 && wide.least < wide.most-wide.least {
 		wide.least = 0
@@ -245,7 +288,10 @@ func (s *sheet) answerLine(f frame, y, lead float64, a answer, isP, isFirst bool
 	if a.changes {
 		class = "a b"
 	}
-	s.text(lead-10, y+4.5, "end", class, short(a.words, leadLetters))
+	told := lines(a.words)
+	for k, l := range told {
+		s.text(lead-10, y+4.5+lineHeight*(float64(k)-float64(len(told)-1)/2), "end", class, l)
+	}
 	end := "holds"
 	switch {
 	case isFirst:
@@ -253,7 +299,7 @@ func (s *sheet) answerLine(f frame, y, lead float64, a answer, isP, isFirst bool
 	case a.changes:
 		end = "changes"
 	}
-	if a.gone && !isFirst {
+	if math.IsNaN(a.value) {
 		s.text(f.left+6, y+4.5, "start", "q", "none")
 		s.text(f.right+8, y+4.5, "start", class, end)
 		return

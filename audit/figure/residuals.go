@@ -54,8 +54,9 @@ func drawResiduals(s *sheet) bool {
 	s.band(f, d.Trend)
 	marked := s.scatter(f, func(p audit.DrawnRow) (float64, float64) { return f.x.at(p.Fitted), f.y.at(p.Residual) })
 	s.seen(f, d.Trend)
+	s.limitWords(f)
 	s.sayLimit()
-	s.sayBand(d.Trend, "fitted", s.unit())
+	s.sayBand(d.Trend, "fitted")
 	s.sayMarked(marked)
 	s.sayThinned()
 	return true
@@ -64,13 +65,17 @@ func drawResiduals(s *sheet) bool {
 // limits draws the zero line and the two lines that no residual of a sound
 // table passes.
 func (s *sheet) limits(f frame) {
+	s.placed = append(s.placed, box{f.right - 32*letter, f.y.at(s.drawing.Limit) - 18, f.right, f.y.at(s.drawing.Limit)})
 	s.line("k", f.left, f.y.at(0), f.right, f.y.at(0))
 	for _, v := range []float64{s.drawing.Limit, -s.drawing.Limit} {
 		s.line("h", f.left, f.y.at(v), f.right, f.y.at(v))
 	}
+}
+
+// limitWords says beside the upper line what it is; drawn last, above the rows.
+func (s *sheet) limitWords(f frame) {
 	y := f.y.at(s.drawing.Limit)
 	text := s.inside() + " sound tables keep within"
-	s.placed = append(s.placed, box{f.right - textWidth(text), y - 18, f.right, y})
 	s.text(f.right-2, y-5, "end", "q v", text)
 }
 
@@ -92,7 +97,7 @@ func (s *sheet) sayLimit() {
 }
 
 // sayBand tells of the means of successive rows and of their band.
-func (s *sheet) sayBand(b *audit.DrawnBand, along, unit string) {
+func (s *sheet) sayBand(b *audit.DrawnBand, along string) {
 	if b == nil {
 		return
 	}
@@ -111,7 +116,6 @@ func (s *sheet) sayBand(b *audit.DrawnBand, along, unit string) {
 		s.say("here all %d lie inside", len(b.Seen))
 		return
 	}
-	_ = unit
 	verb := "lie"
 	if len(out) == 1 {
 		verb = "lies"

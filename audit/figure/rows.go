@@ -49,7 +49,10 @@ func (s *sheet) scatter(f frame, place func(audit.DrawnRow) (x, y float64)) (mar
 		}
 		fmt.Fprintf(&s.body, `<path class="f%d" opacity=".8" d="%s"/>`, ink, paths[g].String())
 	}
-	labels := 0
+	labels, most := 0, mostLabels
+	if len(s.named) > 2*mostLabels {
+		most = 0 // a crowd of labels would hide the rows
+	}
 	for _, p := range s.drawing.Points {
 		if s.named[p.Row] == "" {
 			continue
@@ -64,7 +67,7 @@ func (s *sheet) scatter(f frame, place func(audit.DrawnRow) (x, y float64)) (mar
 			y, arrow = s.atEdge(f, p, x, y)
 		}
 		s.path("m", fmt.Sprintf("M%s %sa7 7 0 1 0 14 0a7 7 0 1 0-14 0z", num(x-7), num(y)))
-		if labels < mostLabels && s.labelAt(f, x, y, "a b", fmt.Sprintf("row %d%s", p.Row, arrow)) {
+		if labels < most && s.labelAt(f, x, y, "a b", fmt.Sprintf("row %d%s", p.Row, arrow)) {
 			labels++
 		}
 	}
@@ -88,8 +91,8 @@ func (s *sheet) keys(top float64) float64 {
 		return 0
 	}
 	x, y := 16.0, top+14
-	for g, label := range s.drawing.Groups {
-		label = short(label, 24)
+	for g := range s.drawing.Groups {
+		label := short(s.group(g), 24)
 		if x > 16 && x+14+textWidth(label) > width-8 {
 			x, y = 16, y+19
 		}

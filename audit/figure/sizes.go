@@ -20,8 +20,8 @@ func drawSizes(s *sheet) bool {
 	if means {
 		s.title = "How far rows lie from their mean, group by group"
 		l.x, l.xTitle, l.yTitle = span{-0.6, float64(len(d.Groups)) - 0.4}, "group", "distance from the mean, in residual SD"
-		for g, label := range d.Groups {
-			l.xTicks, l.xWords = append(l.xTicks, float64(g)), append(l.xWords, short(label, 14))
+		for g := range d.Groups {
+			l.xTicks, l.xWords = append(l.xTicks, float64(g)), append(l.xWords, short(s.group(g), 14))
 		}
 	} else {
 		x := newSpan()
@@ -55,31 +55,51 @@ func drawSizes(s *sheet) bool {
 	s.groupSizes(f, means)
 	s.seen(f, d.Size)
 	s.say("the mean distance of rows from their line is 0.8 SD in a sound table, wherever the predictor stands")
-	s.sayBand(d.Size, "place", " SD")
-	if len(d.Groups) > 1 && len(d.Groups) <= inks {
-		var all []string
-		for g, label := range d.Groups {
-			if !math.IsNaN(d.Sizes[g]) {
-				all = append(all, fmt.Sprintf("%s %s", label, wording.Figure(d.Sizes[g], 2)))
-			}
-		}
-		s.say("mean distance by group, drawn as bars: %s SD", wording.List(all))
-	}
+	s.sayBand(d.Size, s.alongPredictor())
+	s.sayGroups(means)
 	s.sayMarked(marked)
 	s.sayThinned()
 	return true
 }
 
+func (s *sheet) alongPredictor() string {
+	if s.drawing.Predictor.Name == "" {
+		return "group"
+	}
+	return s.drawing.Predictor.Name
+}
+
+// sayGroups tells the mean distance in each group, and which leave their band.
+func (s *sheet) sayGroups(means bool) {
+	b := s.drawing.Groupwise
+	if b == nil || s.plain() {
+		return
+	}
+	var all, out []string
+	for g, v := range b.Seen {
+		text := s.group(g) + " " + wording.Figure(v, 2)
+		all = append(all, text)
+		if v < b.Low[g] || v > b.High[g] {
+			out = append(out, fmt.Sprintf("%s (%s to %s)", s.group(g), wording.Figure(b.Low[g], 2), wording.Figure(b.High[g], 2)))
+		}
+	}
+	drawn := ", drawn as a line in its colour"
+	if means {
+		drawn = ""
+	}
+	s.say("mean distance in each group%s: %s SD", drawn, wording.List(all))
+	if len(out) > 0 {
+		s.say("outside of what %s sound tables keep within: %s", s.inside(), wording.List(out))
+	}
+}
+
 // groupSizes draws the mean size in each group over its own range.
 func (s *sheet) groupSizes(f frame, means bool) {
-	if len(s.drawing.Groups) < 2 || s.plain() || means {
+	if s.drawing.Groupwise == nil || s.plain() || means {
 		return
 	}
 	for _, line := range s.drawing.Lines {
-		v := s.drawing.Sizes[line.Group]
-		if math.IsNaN(v) {
-			continue
-		}
+		v := s.drawing.Groupwise.Seen[line.Group]
 		dash := ""
 		if d := dashes[line.Group]; d != "" {
 			dash = fmt.Sprintf(` stroke-dasharray="%s"`, d)
