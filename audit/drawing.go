@@ -743,6 +743,13 @@ func (w windows) band(tables [][]float64, v []float64, inside, unit float64) *Dr
 	}
 	b := &DrawnBand{At: w.at, Seen: w.means(v), Rows: w.most()}
 	b.Low, b.High = envelope(tables, inside)
+	widest := 0.0
+	for k := range b.At {
+		widest = max(widest, b.High[k]-b.Low[k])
+	}
+	if widest < 1e-6 {
+		return nil // the fit makes every mean zero
+	}
 	return b.times(unit)
 }
 

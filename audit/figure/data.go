@@ -42,7 +42,7 @@ func drawData(s *sheet) bool {
 	labelled := len(d.Groups) > 1 && !means && !s.plain()
 	if labelled {
 		for g := range d.Groups {
-			l.right = max(l.right, 14+textWidth(short(s.group(g), 13)))
+			l.right = max(l.right, 14+textWidth(short(s.group(g), 11)+" ↓"))
 		}
 	}
 	l.top = s.keysUnlessMeans(means)

@@ -312,10 +312,7 @@ func (s *sheet) answerLine(f frame, y, lead float64, a answer, isP, isFirst bool
 	if isP {
 		x := f.x.at(math.Log10(max(a.value, 0.00005)))
 		s.dot(x, y, a.changes)
-		if end == "" || !a.changes {
-			end = strings.TrimPrefix(wording.P(a.value), "p = ")
-		}
-		s.text(f.right+8, y+4.5, "start", class, end)
+		s.text(f.right+8, y+4.5, "start", class, strings.TrimPrefix(strings.TrimPrefix(wording.P(a.value), "p "), "= "))
 		return
 	}
 	if !math.IsNaN(a.low) {

@@ -43,6 +43,9 @@ func drawResiduals(s *sheet) bool {
 		return false
 	}
 	s.title = "What the lines leave over, along their height"
+	if d.Predictor.Name == "" {
+		s.title = "What the means leave over, along their height"
+	}
 	x := newSpan()
 	for _, p := range d.Points {
 		x.take(p.Fitted)

@@ -103,8 +103,7 @@ func (s *sheet) keys(top float64) float64 {
 	return y - top + 8
 }
 
-// band draws what sound tables stay inside, and the means that were seen, with
-// those outside marked.
+// band draws what sound tables stay inside.
 func (s *sheet) band(f frame, b *audit.DrawnBand) {
 	if b == nil {
 		return
@@ -115,6 +114,7 @@ func (s *sheet) band(f frame, b *audit.DrawnBand) {
 	})
 }
 
+// seen joins the means that were seen.
 func (s *sheet) seen(f frame, b *audit.DrawnBand) {
 	if b == nil {
 		return
@@ -122,6 +122,14 @@ func (s *sheet) seen(f frame, b *audit.DrawnBand) {
 	s.clipped(f, func() {
 		s.path("k l", polyline(f.x.all(b.At), f.y.all(b.Seen)))
 	})
+	s.squares(f, b)
+}
+
+// squares draws what was seen, filled where it leaves the band.
+func (s *sheet) squares(f frame, b *audit.DrawnBand) {
+	if b == nil {
+		return
+	}
 	for k, v := range b.Seen {
 		class := "o"
 		if v < b.Low[k] || v > b.High[k] {

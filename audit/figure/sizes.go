@@ -53,20 +53,18 @@ func drawSizes(s *sheet) bool {
 		return f.x.at(p.X), f.y.at(math.Abs(p.Scaled))
 	})
 	s.groupSizes(f, means)
-	s.seen(f, d.Size)
-	s.say("the mean distance of rows from their line is 0.8 SD in a sound table, wherever the predictor stands")
-	s.sayBand(d.Size, s.alongPredictor())
+	if means {
+		s.say("rows of a sound table lie 0.8 SD from their mean on average, in every group; the grey band holds these averages, the squares, in %s of them", s.inside())
+		s.squares(f, d.Size)
+	} else {
+		s.say("rows of a sound table lie 0.8 SD from their line on average, wherever the predictor stands")
+		s.sayBand(d.Size, d.Predictor.Name)
+		s.seen(f, d.Size)
+	}
 	s.sayGroups(means)
 	s.sayMarked(marked)
 	s.sayThinned()
 	return true
-}
-
-func (s *sheet) alongPredictor() string {
-	if s.drawing.Predictor.Name == "" {
-		return "group"
-	}
-	return s.drawing.Predictor.Name
 }
 
 // sayGroups tells the mean distance in each group, and which leave their band.
