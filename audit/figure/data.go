@@ -65,7 +65,7 @@ func drawData(s *sheet) bool {
 		return f.x.at(p.X), f.y.at(p.Y)
 	})
 	aside := s.drawAside(f)
-	s.sayData(marked, aside, means)
+	s.sayData(f, marked, aside, means)
 	return true
 }
 
@@ -117,15 +117,15 @@ func jitter(means bool) func(row int) float64 {
 // three times the width of their middle nine tenths stand at the edge, with
 // their value, since nothing else could be seen beside them.
 func (s *sheet) heights() span {
-	var all []float64
+	var values []float64
 	for _, p := range s.drawing.Points {
-		all = append(all, p.Y)
+		values = append(values, p.Y)
 	}
-	slices.Sort(all)
-	low, high := all[len(all)/20], all[len(all)-1-len(all)/20]
+	slices.Sort(values)
+	low, high := values[len(values)/20], values[len(values)-1-len(values)/20]
 	reach := 3 * (high - low)
 	y := newSpan()
-	for _, v := range all {
+	for _, v := range values {
 		if reach == 0 || (v >= low-reach && v <= high+reach) {
 			y.take(v)
 		}
@@ -192,7 +192,7 @@ func (s *sheet) drawAside(f frame) (drawn []audit.DrawnAside) {
 	return drawn
 }
 
-func (s *sheet) sayData(marked []int, aside []audit.DrawnAside, means bool) {
+func (s *sheet) sayData(f frame, marked []int, aside []audit.DrawnAside, means bool) {
 	d := s.drawing
 	what := title(d.Response) + " over " + title(d.Predictor)
 	if means {
@@ -227,6 +227,9 @@ func (s *sheet) sayData(marked []int, aside []audit.DrawnAside, means bool) {
 		if line.HasBand && !line.Clear {
 			text += ", with a slope whose interval holds zero"
 		}
+		if all(line.Y, func(v float64) bool { return v > f.y.most }) || all(line.Y, func(v float64) bool { return v < f.y.least }) {
+			text += "; it runs outside of the frame"
+		}
 		s.say("%s", text)
 	}
 	switch {
@@ -238,6 +241,9 @@ func (s *sheet) sayData(marked []int, aside []audit.DrawnAside, means bool) {
 		s.say("each band is the %s interval of its line", confidence)
 	}
 	s.sayMarked(marked)
+	if len(s.beyond) > 0 {
+		s.say("arrows at the edge stand for rows beyond the frame: %s", wording.Some(s.beyond, 4))
+	}
 	if len(aside) > 0 {
 		noun := "rows were"
 		if len(aside) == 1 {
@@ -248,12 +254,16 @@ func (s *sheet) sayData(marked []int, aside []audit.DrawnAside, means bool) {
 	s.sayThinned()
 }
 
+func all(values []float64, is func(float64) bool) bool {
+	return !slices.ContainsFunc(values, func(v float64) bool { return !is(v) })
+}
+
 func asideWords(aside []audit.DrawnAside) string {
-	var all []string
+	var rows []string
 	for _, a := range aside {
-		all = append(all, fmt.Sprintf("row %d (%s)", a.Row, a.Reason))
+		rows = append(rows, fmt.Sprintf("row %d (%s)", a.Row, a.Reason))
 	}
-	return wording.Some(all, 3)
+	return wording.Some(rows, 3)
 }
 
 func figure3(v float64) string { return wording.Figure(v, 3) }

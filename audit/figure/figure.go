@@ -105,6 +105,7 @@ type sheet struct {
 	desc    []string
 	beside  string
 	named   map[int]string // rows of the table named by the findings shown, with the rule
+	beyond  []string       // rows that are drawn at the edge
 	canvas
 }
 

@@ -29,7 +29,11 @@ func (s *sheet) scatter(f frame, place func(audit.DrawnRow) (x, y float64)) (mar
 	many := len(s.drawing.Points) > 1200
 	for _, p := range s.drawing.Points {
 		x, y := place(p)
-		if math.IsNaN(x) || math.IsNaN(y) || y < f.top-1 || y > f.bottom+1 {
+		if math.IsNaN(x) || math.IsNaN(y) {
+			continue
+		}
+		if y < f.top-1 || y > f.bottom+1 {
+			s.atEdge(f, p, x, y)
 			continue
 		}
 		if many {
@@ -64,7 +68,7 @@ func (s *sheet) scatter(f frame, place func(audit.DrawnRow) (x, y float64)) (mar
 		marked = append(marked, p.Row)
 		arrow := ""
 		if y < f.top-1 || y > f.bottom+1 {
-			y, arrow = s.atEdge(f, p, x, y)
+			y, arrow = edge(f, y), ": "+figureWords(p.Y)
 		}
 		s.path("m", fmt.Sprintf("M%s %sa7 7 0 1 0 14 0a7 7 0 1 0-14 0z", num(x-7), num(y)))
 		if labels < most && s.labelAt(f, x, y, "a b", fmt.Sprintf("row %d%s", p.Row, arrow)) {
@@ -74,14 +78,22 @@ func (s *sheet) scatter(f frame, place func(audit.DrawnRow) (x, y float64)) (mar
 	return marked
 }
 
-// atEdge draws a row that lies beyond the frame at its edge, with its value.
-func (s *sheet) atEdge(f frame, p audit.DrawnRow, x, y float64) (at float64, words string) {
-	at, tip := f.top+9, -1.0
+// edge is where a row stands that lies above or below the frame.
+func edge(f frame, y float64) float64 {
 	if y > f.bottom {
-		at, tip = f.bottom-9, 1
+		return f.bottom - 9
 	}
-	s.path("d", fmt.Sprintf("M%s %sl3.5 %sh-7z", num(x), num(at+tip*4), num(-tip*8)))
-	return at, ": " + figureWords(p.Y)
+	return f.top + 9
+}
+
+// atEdge draws a row that lies beyond the frame as an arrow at its edge.
+func (s *sheet) atEdge(f frame, p audit.DrawnRow, x, y float64) {
+	tip := -1.0
+	if y > f.bottom {
+		tip = 1
+	}
+	s.path("d", fmt.Sprintf("M%s %sl3.5 %sh-7z", num(x), num(edge(f, y)+tip*4), num(-tip*8)))
+	s.beyond = append(s.beyond, fmt.Sprintf("row %d (%s)", p.Row, figureWords(p.Y)))
 }
 
 // keys writes the groups with their marks in one or more lines above a frame,
