@@ -20,7 +20,7 @@ var mayImport = map[string][]string{
 	"audit":           {"audit/calibrate", "rules", "rules/model", "rules/numeric", "rules/remedy", "rules/wording", "readers"},
 	"audit/calibrate": {"rules", "rules/numeric"},
 	"rules":           {"rules/model", "rules/numeric", "rules/remedy", "rules/wording", "readers"},
-	"rules/remedy":    {"rules/model", "rules/numeric"},
+	"rules/remedy":    {"rules/model", "rules/numeric", "readers"},
 	"rules/model":     {"rules/numeric", "readers"},
 	"rules/numeric":   {},
 	"rules/wording":   {},

@@ -2,7 +2,7 @@ package readers
 
 import (
 	"bytes"
-	"fmt"
+	"errors"
 	"io"
 	"unicode/utf8"
 )
@@ -53,10 +53,10 @@ func newScanner(r io.Reader, delim byte, limit, length int64) *scanner {
 func bufferFor(length int64) int { return int(min(max(length+16, 512), readAhead)) }
 
 // errUnclosed tells that a quote opens at scanner.opens and never closes.
-var errUnclosed = fmt.Errorf("a quote opens and never closes")
+var errUnclosed = errors.New("a quote opens and never closes")
 
 // errLongLine tells that a record is longer than the limit.
-var errLongLine = fmt.Errorf("record beyond the limit")
+var errLongLine = errors.New("record beyond the limit")
 
 // scan moves to the next record, a blank line included; io.EOF ends. The fields
 // are good until the next call.

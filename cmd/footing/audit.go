@@ -23,6 +23,7 @@ type auditFlags struct {
 	roles   model.Roles
 	reading readers.Options
 	rules   []string
+	limits  []string
 
 	confidence float64
 	falseAlarm float64
@@ -92,6 +93,8 @@ func (f *auditFlags) add(cmd *cobra.Command) {
 	flags.StringVar(&f.reading.Decimal, "decimal", "", "decimal sign: . or ,")
 	flags.StringVar(&f.reading.Encoding, "encoding", "", "encoding of a text file, such as windows-1252")
 	flags.StringArrayVar(&f.reading.Missing, "missing", nil, "value that stands for a missing one, such as -999 (repeatable)")
+
+	flags.StringArrayVar(&f.limits, "limit", nil, "raise a limit: NAME=N for file, unpacked, line (bytes, or 300MiB), columns or cells (repeatable)")
 
 	flags.StringArrayVar(&f.rules, "rule", nil, "switch a rule off: NAME=off (repeatable)")
 	flags.Float64Var(&f.confidence, "confidence", 0.95, "confidence of intervals")
@@ -190,6 +193,15 @@ func (f *auditFlags) check() (off []string, err error) {
 	}
 	if f.width != 0 && (f.width < 40 || f.width > 1000) {
 		return nil, fmt.Errorf("--width is %d; it must lie between 40 and 1000", f.width)
+	}
+	for _, setting := range f.limits {
+		name, value, found := strings.Cut(setting, "=")
+		if !found {
+			return nil, fmt.Errorf("--limit is %q; write it as NAME=N", setting)
+		}
+		if err := f.reading.Limits.Set(name, value); err != nil {
+			return nil, fmt.Errorf("--limit: %w", err)
+		}
 	}
 	for _, setting := range f.rules {
 		name, value, found := strings.Cut(setting, "=")
