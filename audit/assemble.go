@@ -358,6 +358,11 @@ func (e *examination) place(w rules.Place) Place {
 	}
 	row := t.Row(w.Row)
 	p.Row = &row
+	if by := e.pass.Columns.Label; by != nil {
+		if label, ok := by.Label(w.Row); ok {
+			p.Label = &label
+		}
+	}
 	if w.Column != nil {
 		cell, value := t.Address(w.Column, w.Row), w.Column.Cell(w.Row).Text
 		p.Cell, p.Value = &cell, &value
@@ -379,6 +384,7 @@ func (e *examination) remedies(x *examined) []Remedy {
 		}
 		r := Remedy{Remedy: t.remedy.Name, Text: wording.Sentence(text), Source: optional(t.remedy.Source), Tried: t.tried, Why: optional(t.why), Slopes: []TrialSlope{}, Judged: map[string]string{}}
 		if t.tried {
+			r.Under = e.speaker().trialWords(x, t)
 			e.fillTrial(&r, t)
 		}
 		all = append(all, r)

@@ -98,7 +98,24 @@ func (e *examination) stateOf(x *examined) (state State, byPower bool) {
 	return Warn, false
 }
 
+// try carries out a remedy, or gives what it gave before where the target does
+// not matter to it.
 func (e *examination) try(r *remedy.Remedy, target remedy.Target) trial {
+	if !r.Whole {
+		return e.carryOut(r, target)
+	}
+	t, done := e.whole[r]
+	if !done {
+		t = e.carryOut(r, target)
+		if e.whole == nil {
+			e.whole = map[*remedy.Remedy]trial{}
+		}
+		e.whole[r] = t
+	}
+	return t
+}
+
+func (e *examination) carryOut(r *remedy.Remedy, target remedy.Target) trial {
 	t := trial{remedy: r}
 	if !r.CanBeTried() {
 		t.why = "only the owner of the table can do this"

@@ -2,6 +2,7 @@ package readers_test
 
 import (
 	"fmt"
+	"math/rand/v2"
 	"strings"
 	"testing"
 
@@ -85,6 +86,22 @@ func TestTableIsFound(t *testing.T) {
 		{name: "a last row that is near the mean is a row", header: 1, rows: "2-6", text: lines("site,x", "a,3", "b,5", "c,4", "a,4", "b,4")},
 		{name: "a group that is called N", header: 1, rows: "2-7", text: lines("plot,dose,y", "1,N,3.5", "2,P,4.5", "3,K,5.25", "4,N,3.25", "5,P,4", "6,N,5")},
 		{name: "a group that is called total", header: 1, rows: "2-7", text: lines("plot,part,y", "p1,total,3.5", "p2,leaf,4.5", "p3,stem,5.25", "p4,total,3.25", "p5,leaf,4", "p6,total,5")},
+		{
+			name: "deviations under means", header: 1, rows: "2-3 6-7", stray: "4 summary, 5 summary, 8 summary, 9 summary",
+			text: lines("frond,site,x,y", "F1,a,1.25,3.5", "F2,a,2.5,4.5", "mean,a,1.875,4", "sd,a,0.88,0.71", "F3,b,5.25,3.5", "F4,b,2.5,4.5", "mean,b,3.875,4", "sd,b,1.94,0.71"),
+		},
+		{
+			name: "a level that is called max, once without its site", header: 1, rows: "2-7",
+			text: lines("dose,site,y", "max,a,3.5", "none,a,4.5", "max,b,5.25", "none,b,3.25", "max,,4", "none,a,5"),
+		},
+		{name: "a row with codes after a gap", text: survey(frondNames, 4, "", "F05,exposed,NA,NA", "", 4), header: 1, rows: "2-5 7-7 9-12"},
+		{name: "a row with texts after a gap", text: survey(frondNames, 4, "", "F05,exposed,torn,lost", "", 4), header: 1, rows: "2-5 7-7 9-12"},
+		{name: "a row with codes is no row of units", text: survey(frondNames, "F00,place,in,NA", 8), header: 1, rows: "2-10"},
+		{name: "a row with a known label is no row of units", text: survey(frondNames, "F00,exposed,m,s", 8), header: 1, rows: "2-10"},
+		{name: "names that are measures", text: lines("site,4 °C,12 °C", "a,1,2", "b,3,4"), header: 1, rows: "2-3"},
+		{name: "measures under their names", text: lines("site,x", "a,4 °C", "b,12 °C"), header: 1, rows: "2-3"},
+		{name: "a last label that is called sd", header: 1, rows: "2-5", text: lines("plot,x", "sa,1.5", "sb,2.5", "sc,9", "sd,3")},
+		{name: "an average that is not of these rows", header: 1, rows: "2-4", stray: "5 summary", text: lines("plot,x", "sa,1.5", "sb,2.5", "sc,9", "Average,7")},
 		{name: "a footer after a gap", text: survey(frondNames, 8, "", "thermometer no. 4"), header: 1, rows: "2-9", stray: "11 note"},
 		{name: "a footer after a row of commas", text: survey(frondNames, 8, ",,,", "thermometer no. 4,,,"), header: 1, rows: "2-9", stray: "11 note"},
 		{name: "a footer at once", text: survey(frondNames, 8, "measured by hand,,,"), header: 1, rows: "2-9", stray: "10 note"},
@@ -350,5 +367,48 @@ func TestDecimalSignOfTheWholeFile(t *testing.T) {
 	table := read(t, b.String(), readers.Options{})
 	if v, ok := table.Columns[1].Number(table.Len() - 1); !ok || v != 7.25 || table.Reading.Decimal != "," {
 		t.Errorf("the last number is %v (%t), the sign %q", v, ok, table.Reading.Decimal)
+	}
+}
+
+// No sound table loses a row: whatever its groups are called and wherever cells are
+// missing, all rows are records and none is taken for a sum, a note or a title.
+func TestSoundTablesLoseNoRow(t *testing.T) {
+	rng := rand.New(rand.NewPCG(11, 3))
+	groups := [...][]string{
+		{"a", "b"},
+		{"exposed", "sheltered"},
+		{"N", "P", "K", "NPK"},
+		{"max", "min"},
+		{"total", "part"},
+		{"1", "2", "3"},
+		{"A1", "B2"},
+		{"North bay", "South bay"},
+		{"control", "high dose"},
+		{"m", "f"},
+		{"mean", "median"},
+	}
+	islands := [...]string{"Porto Santo", "Rio", "La Palma", "Hiva Oa", "Ile", "Sal", "Bom dia", "Ano"}
+	for k := range 600 {
+		n := 8 + rng.IntN(50)
+		decimals, group, missing := rng.IntN(4), groups[rng.IntN(len(groups))], [...]string{"", "NA", "-"}[rng.IntN(3)]
+		share := [...]float64{0, 0.05, 0.15}[rng.IntN(3)]
+		design, labels := rng.IntN(2) == 0, rng.IntN(4)
+		text := []string{"label,group,x,y"}
+		for i := range n {
+			label := [...]string{fmt.Sprintf("F%02d", i+1), fmt.Sprint(i + 1), islands[rng.IntN(len(islands))], fmt.Sprintf("plot %d", 1+i%5)}[labels]
+			x := 10 * rng.Float64()
+			if design {
+				x = float64(5 * (i % 5))
+			}
+			cells := []string{label, group[rng.IntN(len(group))], fmt.Sprintf("%.*f", decimals, x), fmt.Sprintf("%.*f", 3-decimals, 3+2*rng.NormFloat64())}
+			if c := rng.IntN(4); rng.Float64() < share {
+				cells[c] = missing
+			}
+			text = append(text, strings.Join(cells, ","))
+		}
+		table := read(t, lines(text...), readers.Options{})
+		if table.Len() != n || len(table.Reading.Stray)+len(table.Reading.Titles)+len(table.Faults()) > 0 {
+			t.Fatalf("table %d: %d of %d rows, stray %s:\n%s", k, table.Len(), n, kinds(table.Reading.Stray), lines(text...))
+		}
 	}
 }

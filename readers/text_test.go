@@ -227,7 +227,7 @@ func TestCellsKeepWhatWasWritten(t *testing.T) {
 		{text: "7,5", decimals: -1, look: readers.OtherSign},
 		{text: "4 cm", decimals: -1, look: readers.Measure},
 		{text: "12345678901234567890"},
-		{text: "0.1234567890123456789", decimals: -1},
+		{text: "0.1234567890123456789", decimals: 19},
 		{text: "0.30000000000000004", decimals: 17},
 		{text: "-12345678901234.568", decimals: 3},
 	} {

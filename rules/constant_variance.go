@@ -42,9 +42,7 @@ func constantVarianceChance(p *Pass) (*Chance, string) {
 		return nil, "one mean and no predictor: nothing for the scatter to vary with"
 	}
 	c := &Chance{Members: []Member{p.koenker()}, Floor: p.spreadFloor()}
-	for _, m := range p.spreadAlong() {
-		c.Members = append(c.Members, m)
-	}
+	c.Members = append(c.Members, p.spreadAlong()...)
 	if len(p.Design.Groups) > 1 {
 		if m, ok := p.brownForsythe(); ok {
 			c.Members = append(c.Members, m)

@@ -103,6 +103,7 @@ func ask(t *testing.T, r *Rule, p *Pass) Outcome {
 				j.Strong = m
 			}
 		}
+		j.Closed = p.Fit.N() > LargestSimulated
 		j.P = min(1, float64(len(chance.Members))*j.Strongest().P)
 		j.PJoint = j.P
 		j.BelowFloor = j.P <= p.Settings.FalseAlarm && chance.Floor.Below()
@@ -147,3 +148,32 @@ func expect(t *testing.T, p *Pass, o Outcome, answer Answer, words string, cells
 		t.Errorf("points at %v, want %v", got, cells)
 	}
 }
+
+// drawn makes a table of n rows in one line, x evenly on 0 to 10, with errors
+// by the given function of row and normal deviate.
+func drawn(n int, seed uint64, errorAt func(i int, z float64) float64) *sheet {
+	random := rand.New(rand.NewPCG(seed, 3))
+	s := &sheet{header: []string{"no", "x", "y"}}
+	for i := range n {
+		x := 10 * float64((i*7)%n) / float64(n-1)
+		s.add(i+1, fmt.Sprintf("%.4f", x), fmt.Sprintf("%.6f", 1+x+errorAt(i, random.NormFloat64())))
+	}
+	return s
+}
+
+var plainRoles = model.Roles{Response: "y", Predictors: []string{"x"}}
+
+// meansDrawn makes a table of n rows in two groups, without a predictor.
+func meansDrawn(n int, seed uint64, errorAt func(i int, z float64) float64) *sheet {
+	random := rand.New(rand.NewPCG(seed, 5))
+	s := &sheet{header: []string{"g", "y"}}
+	for i := range n {
+		s.add([]string{"a", "b"}[i%2], fmt.Sprintf("%.6f", float64(3+i%2)+errorAt(i, random.NormFloat64())))
+	}
+	return s
+}
+
+var meansRoles = model.Roles{Response: "y", Group: "g"}
+
+// normal leaves the deviate as it is.
+func normal(_ int, z float64) float64 { return z }

@@ -24,6 +24,10 @@ type Remedy struct {
 	Edit   func(Start) (*model.Design, error)
 	Answer func(Start) (model.Answers, error)
 
+	// Whole marks a remedy that looks at all rows and at no target: one trial
+	// answers for every rule that asks for it.
+	Whole bool
+
 	// Slow marks a remedy of thousands of refits, left out of large tables.
 	Slow bool
 }
@@ -65,7 +69,7 @@ type Target struct {
 
 	Reliability map[string]float64 // of the predictor, by group
 	LeaveOut    int                // position of a further predictor or covariate
-	Subjects    []int              // of each used row, where they are not those of the design
+	Subjects    []int              // of each used row: the levels of replicated predictor values
 }
 
 // NotApplicable says why a remedy cannot be tried on these rows.
