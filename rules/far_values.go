@@ -19,9 +19,9 @@ var FarValues = &Rule{
 	Asks:   "Does a number lie far from all others of its group?",
 	Why:    "A slipped point or digit makes a number that reads well and is wrong; far out, one such row can make the slope.",
 	Method: "distance from the median of the group, in robust standard deviations (1.4826 times the median absolute deviation, over all groups together); " +
-		"more where the outer tenth on that side lies further out; and for positive numbers with a long tail above on the scale of logarithms too. " +
+		"more where the outer tenth on that side lies further out; and for positive numbers with a long tail above, or wide beside their size, on the scale of logarithms too. " +
 		"Suspected codes, day numbers and swapped cells are left to their own rules. A number that comes among its like when divided or multiplied by 10, 100 or 1000 is told as a slipped point",
-	Limit: "7 + 60/n robust standard deviations with n numbers in the column, and 4.5 + 30/n of the logarithms; at most a twentieth of the numbers; of a column set by design, a number beyond the others by more than twice their range, standing alone. " +
+	Limit: "7 + 60/n robust standard deviations with n numbers in the column, and 4.5 + 30/n of the logarithms; at most a twentieth of the numbers; of a column set by design, numbers beyond the others by more than twice their range. " +
 		"Normal measurements do not reach so far in 1 of 500 tables",
 	Needs:    NeedsTable,
 	Remedies: []*remedy.Remedy{remedy.MendPoint, remedy.WithoutDoubted},
@@ -72,7 +72,7 @@ type bulk struct {
 	f         *Profile
 	centre    []float64 // of each number's group
 	scale     float64   // robust standard deviation about it
-	logCentre []float64 // the same for logarithms; nil unless they are nearly all positive, with a long tail above
+	logCentre []float64 // the same for logarithms; nil unless they are nearly all positive, with a long tail above or wide beside their size
 	logScale  float64
 	below     float64 // scale on that side, from the outer tenth; at least scale
 	above     float64
@@ -107,9 +107,7 @@ func (p *Pass) bulkOf(col *readers.Column) *bulk {
 	const tenth = 1.2816 // normal quantile of 0.9
 	below, above := -numeric.Quantile(rest, 0.1)/tenth, numeric.Quantile(rest, 0.9)/tenth
 	b.below, b.above = max(b.scale, below), max(b.scale, above)
-	if above < (1.6-2.5/math.Sqrt(float64(len(rest))))*below {
-		return b // even enough to be judged as it is
-	}
+	tail := above >= (1.6-2.5/math.Sqrt(float64(len(rest))))*below
 	// A few codes or slips below 0 do not make a column of positive numbers
 	// another one, and neither do small ones that rounding made 0.
 	negative, _ := slices.BinarySearch(f.Sorted, 0)
@@ -118,7 +116,12 @@ func (p *Pass) bulkOf(col *readers.Column) *bulk {
 		for k, v := range f.Values {
 			logs[k] = math.Log(max(v, f.Step/2))
 		}
-		b.logCentre, b.logScale = aboutMedians(logs, group, groups)
+		centre, scale := aboutMedians(logs, group, groups)
+		// A column that is even, and narrow beside its own size, is judged as it
+		// is; a wide one may have a long tail that few rows do not show.
+		if tail || scale > 0.2 {
+			b.logCentre, b.logScale = centre, scale
+		}
 	}
 	return b
 }
@@ -205,21 +208,27 @@ func (b *bulk) far() []int {
 	return far
 }
 
-// beyondLevels lists single numbers of a set column beyond all its levels.
+// beyondLevels lists numbers of a set column that lie beyond all others by more
+// than twice the range of these.
 func (b *bulk) beyondLevels() []int {
-	values, times := b.f.Levels()
-	low, high := math.Inf(1), math.Inf(-1)
-	for k, v := range values {
-		if times[k] > 1 {
-			low, high = min(low, v), max(high, v)
+	v := b.f.Sorted
+	n := len(v)
+	most := max(2, n/20)
+	low, high := v[0], v[n-1]
+	for k := 1; k <= most; k++ {
+		if v[n-k]-v[n-k-1] > 2*(v[n-k-1]-v[0]) && v[n-k-1] > v[0] {
+			high = v[n-k-1]
+		}
+		if v[k]-v[k-1] > 2*(v[n-1]-v[k]) && v[n-1] > v[k] {
+			low = v[k]
 		}
 	}
-	if low >= high {
+	if low == v[0] && high == v[n-1] {
 		return nil
 	}
 	var far []int
-	for k, v := range b.f.Values {
-		if max(low-v, v-high) > 2*(high-low) {
+	for k, x := range b.f.Values {
+		if x < low || x > high {
 			far = append(far, k)
 		}
 	}

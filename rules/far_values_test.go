@@ -42,3 +42,15 @@ func TestLongTailsAreNotFar(t *testing.T) {
 		t.Errorf("%d of 200 lognormal columns are suspected", alarms)
 	}
 }
+
+// A dose typed with a zero too many stands out of its levels, as long as these
+// do not grow by tens themselves.
+func TestFarLevels(t *testing.T) {
+	s := kelp(40, 48)
+	for i := range s.rows {
+		s.rows[i][1] = fmt.Sprint(8 + 2*(i/2%5))
+	}
+	s.rows[9][1] = "140"
+	p := passOf(t, s, kelpRoles)
+	expect(t, p, ask(t, FarValues, p), Breach, "B11 temperature is 140 beside 8 to 16 (14 with the point moved?)", "B11")
+}

@@ -95,7 +95,7 @@ func digits3(v float64, all []float64, significant bool) string {
 func TestTableStudy(t *testing.T) {
 	each := 8
 	if *study == "full" {
-		each = 1000
+		each = 250
 	}
 	total, alarms := 0, 0
 	byRule, byKind := map[string]int{}, map[string]int{}
