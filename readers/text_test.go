@@ -120,6 +120,11 @@ func TestTextTables(t *testing.T) {
 			want: lines("header 1: A site text; B length [cm] number;", `2: "a" 4.1'cm`, `3: "b" "5 mm"`, `4: "c" 6`, `5: "d" 7'cm`, `6: "e" 8'cm`, `7: "f" 9'cm`),
 		},
 		{
+			name: "units that differ are no unit of the column",
+			text: lines("site,length,y", "a,4.1 cm,1", "b,5 mm,2", "c,6 m,3"),
+			want: lines("header 1: A site text; B length text; C y number;", `2: "a" "4.1 cm" 1`, `3: "b" "5 mm" 2`, `4: "c" "6 m" 3`),
+		},
+		{
 			name: "dates and truth values make columns of their own",
 			text: lines("day,seen,x", "2024-06-04,TRUE,1", "2024-06-05,FALSE,2", "2024-06-06,true,3"),
 			want: lines("header 1: A day date; B seen bool; C x number;", `2: @2024-06-04 ?TRUE 1`, `3: @2024-06-05 ?FALSE 2`, `4: @2024-06-06 ?true 3`),
