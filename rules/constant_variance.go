@@ -45,7 +45,9 @@ func constantVarianceChance(p *Pass) (*Chance, string) {
 	for _, m := range p.spreadAlong() {
 		c.Members = append(c.Members, m)
 	}
-	if len(p.Design.Groups) > 1 {
+	// The two rows of a pair are as far from its median as each other: pairs alone
+	// leave nothing within groups to compare with.
+	if len(p.Design.Groups) > 1 && slices.Max(p.Design.GroupSizes()) > 2 {
 		if m, ok := p.brownForsythe(); ok {
 			c.Members = append(c.Members, m)
 		}
