@@ -11,6 +11,7 @@ import (
 	"footing/readers"
 	"footing/rules"
 	"footing/rules/model"
+	"footing/rules/remedy"
 )
 
 // Request is what to audit and how.
@@ -51,6 +52,7 @@ type examination struct {
 	request  Request
 	pass     *rules.Pass
 	findings []*examined
+	whole    map[*remedy.Remedy]trial // of remedies that need no target, each tried once
 }
 
 // Table audits a table that has been read. An error is a *readers.Error, when
@@ -70,7 +72,7 @@ func Table(t *readers.Table, request Request) (*Result, error) {
 
 // examine fits the model of the roles and runs every rule.
 func examine(t *readers.Table, request Request) (*examination, error) {
-	p := &rules.Pass{Table: t, Settings: request.Settings}
+	p := &rules.Pass{Table: t, Settings: request.Settings, Profiles: rules.Profiles{}}
 	if request.Roles.Named() {
 		columns, err := model.Resolve(t, request.Roles)
 		if err != nil {

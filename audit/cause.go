@@ -248,7 +248,7 @@ func (e *examination) alarmsIn(d *model.Design, name string) (map[string]bool, b
 		}
 	}
 	still := map[string]bool{}
-	for rule, j := range calibrate.Judge(asked, p, calibrate.Options{Name: "cause/" + name + "/"}) {
+	for rule, j := range calibrate.Judge(asked, p, calibrate.Options{Name: "cause/" + name + "/", OnlyAlarms: true}) {
 		if j.Alarm {
 			still[rule] = true
 		}

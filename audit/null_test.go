@@ -16,8 +16,8 @@ import (
 	"footing/rules/model"
 )
 
-// soundTable draws a table of two groups: x at fixed places, normal errors.
-func soundTable(t *testing.T, n int, random *rand.Rand) *readers.Table {
+// soundSheet draws a table of two groups: x at fixed places, normal errors.
+func soundSheet(t *testing.T, n int, random *rand.Rand) *readers.Table {
 	t.Helper()
 	var b strings.Builder
 	b.WriteString("g,x,no,y\n")
@@ -44,7 +44,7 @@ func TestJointPIsExact(t *testing.T) {
 	any := 0
 	own := map[string]int{}
 	for k := range tables {
-		p := passOf(t, soundTable(t, 14, random), soundRoles)
+		p := passOf(t, soundSheet(t, 14, random), soundRoles)
 		p.Settings.Replicates, p.Settings.Seed = 199, uint64(k)
 		alarm := false
 		for name, j := range calibrate.Judge(rules.All, p, calibrate.Options{}) {
@@ -78,7 +78,7 @@ func TestJointPIsExact(t *testing.T) {
 // their chance in them.
 func TestNullOfOneDesign(t *testing.T) {
 	const tables, replicates = 6000, 3999
-	p := passOf(t, soundTable(t, 20, rand.New(rand.NewPCG(3, 4))), soundRoles)
+	p := passOf(t, soundSheet(t, 20, rand.New(rand.NewPCG(3, 4))), soundRoles)
 	p.Settings.Replicates = replicates
 	null := calibrate.Simulate(rules.All, p)
 	rates := null.Rates("test", tables, func() func(*rand.Rand, []float64) {
@@ -104,7 +104,7 @@ func TestNothingDependsOnTheCores(t *testing.T) {
 	before := runtime.GOMAXPROCS(0)
 	defer runtime.GOMAXPROCS(before)
 	random := rand.New(rand.NewPCG(5, 6))
-	table := soundTable(t, 40, random)
+	table := soundSheet(t, 40, random)
 	var first string
 	for _, cores := range []int{1, 2, 8} {
 		runtime.GOMAXPROCS(cores)
@@ -129,7 +129,7 @@ func TestNothingDependsOnTheCores(t *testing.T) {
 // TestSeedDecidesTheNull: another seed draws other tables, the same seed the
 // same.
 func TestSeedDecidesTheNull(t *testing.T) {
-	p := passOf(t, soundTable(t, 30, rand.New(rand.NewPCG(7, 8))), soundRoles)
+	p := passOf(t, soundSheet(t, 30, rand.New(rand.NewPCG(7, 8))), soundRoles)
 	ps := func(seed uint64) string {
 		p.Settings.Seed = seed
 		var all []string

@@ -17,7 +17,8 @@ type body struct {
 	units   map[int]string  // from the row of units, by grid column
 	names   map[string]bool // of the header, as foldName makes them
 	forms   map[int]*labelForms
-	marks   []uint8 // by record, see markRows
+	marks   []uint8         // by record, see markRows
+	levels  map[[2]int]bool // by column and word, see isLevel
 	figures *figures
 }
 

@@ -2,6 +2,7 @@ package readers_test
 
 import (
 	"fmt"
+	"math/rand/v2"
 	"strings"
 	"testing"
 
@@ -366,5 +367,48 @@ func TestDecimalSignOfTheWholeFile(t *testing.T) {
 	table := read(t, b.String(), readers.Options{})
 	if v, ok := table.Columns[1].Number(table.Len() - 1); !ok || v != 7.25 || table.Reading.Decimal != "," {
 		t.Errorf("the last number is %v (%t), the sign %q", v, ok, table.Reading.Decimal)
+	}
+}
+
+// No sound table loses a row: whatever its groups are called and wherever cells are
+// missing, all rows are records and none is taken for a sum, a note or a title.
+func TestSoundTablesLoseNoRow(t *testing.T) {
+	rng := rand.New(rand.NewPCG(11, 3))
+	groups := [...][]string{
+		{"a", "b"},
+		{"exposed", "sheltered"},
+		{"N", "P", "K", "NPK"},
+		{"max", "min"},
+		{"total", "part"},
+		{"1", "2", "3"},
+		{"A1", "B2"},
+		{"North bay", "South bay"},
+		{"control", "high dose"},
+		{"m", "f"},
+		{"mean", "median"},
+	}
+	islands := [...]string{"Porto Santo", "Rio", "La Palma", "Hiva Oa", "Ile", "Sal", "Bom dia", "Ano"}
+	for k := range 600 {
+		n := 8 + rng.IntN(50)
+		decimals, group, missing := rng.IntN(4), groups[rng.IntN(len(groups))], [...]string{"", "NA", "-"}[rng.IntN(3)]
+		share := [...]float64{0, 0.05, 0.15}[rng.IntN(3)]
+		design, labels := rng.IntN(2) == 0, rng.IntN(4)
+		text := []string{"label,group,x,y"}
+		for i := range n {
+			label := [...]string{fmt.Sprintf("F%02d", i+1), fmt.Sprint(i + 1), islands[rng.IntN(len(islands))], fmt.Sprintf("plot %d", 1+i%5)}[labels]
+			x := 10 * rng.Float64()
+			if design {
+				x = float64(5 * (i % 5))
+			}
+			cells := []string{label, group[rng.IntN(len(group))], fmt.Sprintf("%.*f", decimals, x), fmt.Sprintf("%.*f", 3-decimals, 3+2*rng.NormFloat64())}
+			if c := rng.IntN(4); rng.Float64() < share {
+				cells[c] = missing
+			}
+			text = append(text, strings.Join(cells, ","))
+		}
+		table := read(t, lines(text...), readers.Options{})
+		if table.Len() != n || len(table.Reading.Stray)+len(table.Reading.Titles)+len(table.Faults()) > 0 {
+			t.Fatalf("table %d: %d of %d rows, stray %s:\n%s", k, table.Len(), n, kinds(table.Reading.Stray), lines(text...))
+		}
 	}
 }

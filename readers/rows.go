@@ -135,12 +135,26 @@ func (b *body) sortRun(a, end, lastNumber int, marks []uint8, other *bool) {
 			b.drop(r, Note, "")
 			continue
 		case m&(rowWord|rowUnnamed) != 0 || r == tail-1 || r+1 < end && marks[r+1]&rowNumber == 0:
-			if word := b.figures.summary(r, m, r >= tail-8); word != "" {
+			if word := b.figures.summary(r, m, b.onlyWordsFollow(r+1, tail)); word != "" {
 				b.drop(r, Summary, word)
 				continue
 			}
 		}
 	}
+}
+
+// onlyWordsFollow tells whether all rows of [a, end) have a word for a sum: then the
+// row before them may stand at the end of the table.
+func (b *body) onlyWordsFollow(a, end int) bool {
+	if end-a > 8 {
+		return false
+	}
+	for ; a < end; a++ {
+		if b.fate[a] == keep && b.marks[a]&rowWord == 0 {
+			return false
+		}
+	}
+	return true
 }
 
 func (b *body) drop(r int, kind StrayKind, word string) {
@@ -219,7 +233,7 @@ func (b *body) strayRun(a, end int, marks []uint8) {
 			continue
 		}
 		k, word := kind, ""
-		if k == Note && (marks[r]&(rowWord) != 0 || numbers > 0) {
+		if k == Note && (marks[r]&rowWord != 0 || numbers > 0) {
 			if word = b.summaryWord(r); word != "" {
 				k = Summary
 			}

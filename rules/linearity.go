@@ -189,7 +189,7 @@ func (p *Pass) scoreMember(columns []column) Member {
 // dropped.
 func largestAlong(columns [][]float64, e []float64) (at int, along float64) {
 	for k, q := range columns {
-		if v := math.Abs(floats.Dot(q, e)); v > along {
+		if v := math.Abs(floats.Dot(q, e)); v > along*(1+1e-9) { // at a tie the first, whatever rounding says
 			at, along = k, v
 		}
 	}

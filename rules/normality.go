@@ -84,7 +84,7 @@ func (p *Pass) andersonDarling() Member {
 	return Member{
 		Test: Test{Name: "Anderson-Darling A", Value: a, P: numeric.AndersonDarlingP(a)},
 		New: func() func(*Sample) float64 {
-			return func(s *Sample) float64 { return numeric.AndersonDarlingStatistic(s.E) }
+			return func(s *Sample) float64 { return numeric.AndersonDarlingOfSorted(s.Sorted()) }
 		},
 		ClosedP: numeric.AndersonDarlingP,
 	}

@@ -60,10 +60,17 @@ func passOf(t *testing.T, s *sheet, roles model.Roles, missing ...string) *Pass 
 	if err != nil {
 		t.Fatal(err)
 	}
+	return passOn(t, table, roles)
+}
+
+// passOn fits the model of the roles to a table.
+func passOn(t *testing.T, table *readers.Table, roles model.Roles) *Pass {
+	t.Helper()
 	p := &Pass{Table: table, Settings: testSettings()}
 	if !roles.Named() {
 		return p
 	}
+	var err error
 	if p.Columns, err = model.Resolve(table, roles); err != nil {
 		t.Fatal(err)
 	}
@@ -127,6 +134,8 @@ func expect(t *testing.T, p *Pass, o Outcome, answer Answer, words string, cells
 	var got []string
 	for _, w := range o.Where {
 		switch {
+		case w.Stray > 0:
+			got = append(got, fmt.Sprint(w.Stray))
 		case w.Row < 0:
 			got = append(got, w.Column.Title())
 		case w.Column == nil:

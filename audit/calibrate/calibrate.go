@@ -20,6 +20,10 @@ import (
 type Options struct {
 	Power bool   // tell the power of every rule
 	Name  string // of the random streams, "" for the audit itself
+
+	// OnlyAlarms leaves out what is needed to tell of an alarm, but not to know
+	// of it: Point may be nil.
+	OnlyAlarms bool
 }
 
 // Replicates is how many tables are drawn for the null of a design of n rows at

@@ -2,7 +2,6 @@ package calibrate
 
 import (
 	"math"
-	"slices"
 
 	"footing/rules"
 	"footing/rules/numeric"
@@ -25,7 +24,9 @@ func (f *family) judgeClosed(p *rules.Pass, joint map[string]*rules.Joint, o Opt
 		j.Closed = true
 		least := math.Inf(1)
 		for m, member := range f.chances[k].Members {
-			j.Point = append(j.Point, pointOf(member.ClosedP, p.Settings.FalseAlarm))
+			if !o.OnlyAlarms {
+				j.Point = append(j.Point, pointOf(member.ClosedP, p.Settings.FalseAlarm))
+			}
 			pValue := member.ClosedP(observed[f.first[k]+m])
 			if pValue < least {
 				least, j.Strong = pValue, m
@@ -59,6 +60,10 @@ func pointOf(p func(float64) float64, alpha float64) float64 {
 // closedPower tells the power of every rule in a large table.
 func (f *family) closedPower(p *rules.Pass, joint map[string]*rules.Joint, critical float64) {
 	d := newDrawer(p, f, "")
+	var points []float64
+	if p.Fit.N() <= largestPowerTable {
+		points = f.criticalPoints(critical)
+	}
 	for k, name := range f.names {
 		j := joint[name]
 		trouble := f.chances[k].Breach()
@@ -71,27 +76,48 @@ func (f *family) closedPower(p *rules.Pass, joint map[string]*rules.Joint, criti
 			j.AnyPower = j.Power
 			continue
 		}
-		own, any := 0, 0
-		for _, row := range d.draw("power/"+name, closedPowerTables, trouble.New) {
-			var ps []float64
-			for at := range f.names {
-				ps = append(ps, f.closedP(at, row))
+		own, any := make([]bool, closedPowerTables), make([]bool, closedPowerTables)
+		d.each("power/"+name, closedPowerTables, trouble.New, func(w *worker, r int) {
+			own[r] = w.reaches(k, points)
+			any[r] = own[r]
+			for other := range f.names {
+				any[r] = any[r] || w.reaches(other, points)
 			}
-			if ps[k] <= critical {
-				own++
-			}
-			if slices.Min(ps) <= critical {
-				any++
-			}
-		}
-		j.Power, j.AnyPower = float64(own)/closedPowerTables, float64(any)/closedPowerTables
+		})
+		j.Power, j.AnyPower = share(own), share(any)
 	}
 }
 
-func (f *family) closedP(k int, row []float64) float64 {
-	least := math.Inf(1)
-	for m, member := range f.chances[k].Members {
-		least = min(least, member.ClosedP(row[f.first[k]+m]))
+// criticalPoints gives for each member the value at which its rule's p, over
+// its members by Bonferroni, comes down to critical.
+func (f *family) criticalPoints(critical float64) []float64 {
+	var points []float64
+	for _, c := range f.chances {
+		for _, m := range c.Members {
+			points = append(points, pointOf(m.ClosedP, critical/float64(len(c.Members))))
+		}
 	}
-	return min(1, least*float64(len(f.chances[k].Members)))
+	return points
+}
+
+// reaches reports whether a member of rule k reaches its point in the worker's
+// sample. Statistics are computed only until one does: one of thousands of rows
+// can cost more than the drawing of them.
+func (w *worker) reaches(k int, points []float64) bool {
+	for m := w.d.family.first[k]; m < w.d.family.first[k+1]; m++ {
+		if w.statistics[m](w.sample) >= points[m] {
+			return true
+		}
+	}
+	return false
+}
+
+func share(of []bool) float64 {
+	count := 0
+	for _, yes := range of {
+		if yes {
+			count++
+		}
+	}
+	return float64(count) / float64(len(of))
 }

@@ -67,13 +67,25 @@ func (d *drawer) null(tables int) [][]float64 {
 }
 
 // draw computes the statistics of the given number of tables, whose errors
-// newErrors' functions draw. Blocks are shared out among the cores.
+// newErrors' functions draw.
 func (d *drawer) draw(stream string, tables int, newErrors func() func(*rand.Rand, []float64)) [][]float64 {
 	rows := make([][]float64, tables)
 	flat := make([]float64, tables*d.family.members())
 	for r := range rows {
 		rows[r], flat = flat[:d.family.members()], flat[d.family.members():]
 	}
+	d.each(stream, tables, newErrors, func(w *worker, r int) {
+		for m, statistic := range w.statistics {
+			rows[r][m] = statistic(w.sample)
+		}
+	})
+	return rows
+}
+
+// each draws the given number of tables and visits every one once, with the
+// worker whose sample holds it. Blocks are shared out among the cores, so visit
+// must keep apart what it writes for each table.
+func (d *drawer) each(stream string, tables int, newErrors func() func(*rand.Rand, []float64), visit func(w *worker, r int)) {
 	blocks := make(chan int)
 	var workers sync.WaitGroup
 	for range min(runtime.GOMAXPROCS(0), (tables+block-1)/block) {
@@ -82,7 +94,8 @@ func (d *drawer) draw(stream string, tables int, newErrors func() func(*rand.Ran
 			for b := range blocks {
 				random := numeric.BlockStream(d.pass.Settings.Seed, stream, b)
 				for r := b * block; r < min(tables, (b+1)*block); r++ {
-					w.table(random, rows[r])
+					w.table(random)
+					visit(w, r)
 				}
 			}
 		})
@@ -92,7 +105,6 @@ func (d *drawer) draw(stream string, tables int, newErrors func() func(*rand.Ran
 	}
 	close(blocks)
 	workers.Wait()
-	return rows
 }
 
 // worker draws one table after the other with memory of its own.
@@ -116,17 +128,14 @@ func (d *drawer) newWorker(errors func(*rand.Rand, []float64)) *worker {
 	return w
 }
 
-// table draws one table and fills row with its statistics.
-func (w *worker) table(random *rand.Rand, row []float64) {
+// table draws one table into the worker's sample.
+func (w *worker) table(random *rand.Rand) {
 	w.errors(random, w.z)
 	if w.d.grid > 0 {
 		w.round()
 	}
 	w.d.pass.Fit.Basis.ResidualOnce(w.sample.E, w.z)
 	w.sample.Changed()
-	for m, statistic := range w.statistics {
-		row[m] = statistic(w.sample)
-	}
 }
 
 // round puts the errors on the fitted lines and rounds the responses as those

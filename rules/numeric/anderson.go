@@ -7,11 +7,15 @@ import "math"
 // 1 + 0.75/n + 2.25/n² (Stephens 1986): the number that AndersonDarlingP takes.
 // x need not be sorted. Values that are all equal, or fewer than two, give NaN.
 func AndersonDarlingStatistic(x []float64) float64 {
-	n := len(x)
+	return AndersonDarlingOfSorted(Sorted(x))
+}
+
+// AndersonDarlingOfSorted is AndersonDarlingStatistic of values in rising order.
+func AndersonDarlingOfSorted(sorted []float64) float64 {
+	n := len(sorted)
 	if n < 2 {
 		return math.NaN()
 	}
-	sorted := Sorted(x)
 	m, rest := meanParts(sorted)
 	sd := SampleSD(sorted)
 	sum := 0.0

@@ -72,7 +72,11 @@ func (m *mmSearch) sEstimate(stream *rand.Rand) (best mmLine, scale float64, ok 
 		i, j := pair[0], pair[1]
 		slope := (m.y[j] - m.y[i]) / (m.x[j] - m.x[i])
 		line := mmLine{m.y[i] - slope*m.x[i], slope}
-		line, s := m.improve(line, m.scaleOf(line), 2)
+		line, s := m.improve(line, m.scaleOf(line), 1)
+		if s >= scale && !m.canBeat(line, s, scale) {
+			continue
+		}
+		line, s = m.improve(line, s, 1)
 		if s < scale {
 			best, scale = line, s
 		}
@@ -82,6 +86,22 @@ func (m *mmSearch) sEstimate(stream *rand.Rand) (best mmLine, scale float64, ok 
 	}
 	best, scale = m.improve(best, scale, 1000)
 	return best, scale, scale > 0
+}
+
+// canBeat reports whether one more step from a line can bring the scale below
+// that of the best: a look at the mean of rho there, which falls with the scale,
+// spares most candidates the search for their own.
+func (m *mmSearch) canBeat(line mmLine, scale, best float64) bool {
+	if !(scale > 0) || math.IsInf(best, 1) {
+		return true
+	}
+	next, ok := m.weighted(line, scale, resistant)
+	if !ok {
+		return false
+	}
+	m.setResiduals(next)
+	mean, _ := m.meanRho(best)
+	return mean < breakdown
 }
 
 // pairs lists every pair of rows with different x, or 500 drawn from them.

@@ -24,6 +24,10 @@ type Remedy struct {
 	Edit   func(Start) (*model.Design, error)
 	Answer func(Start) (model.Answers, error)
 
+	// Whole marks a remedy that looks at all rows and at no target: one trial
+	// answers for every rule that asks for it.
+	Whole bool
+
 	// Slow marks a remedy of thousands of refits, left out of large tables.
 	Slow bool
 }
@@ -61,6 +65,7 @@ type Start struct {
 type Target struct {
 	Rows   []int             // used rows, as indices of the design
 	Labels map[string]string // group labels to be replaced
+	Values []model.Change    // numbers to be put in place of those of the table
 
 	Reliability map[string]float64 // of the predictor, by group
 	LeaveOut    int                // position of a further predictor or covariate

@@ -17,6 +17,7 @@ var WildBootstrap = &Remedy{
 	Do:     "quote the intervals given here, found by resampling with random signs",
 	Short:  "by resampling with random signs",
 	Source: "Wu 1986, Ann. Stat. 14:1261; Davidson and Flachaire 2008, J. Econometrics 146:162",
+	Whole:  true,
 	Slow:   true,
 	Answer: func(s Start) (model.Answers, error) {
 		a := s.Fit.Answers(s.Confidence)
@@ -76,6 +77,7 @@ var PermutedGroups = &Remedy{
 	Do:     "quote the p-value of the difference found by permutation, given here",
 	Short:  "by permutation",
 	Source: "Freedman and Lane 1983, J. Bus. Econ. Stat. 1:292",
+	Whole:  true,
 	Slow:   true,
 	Answer: func(s Start) (model.Answers, error) {
 		a := s.Fit.Answers(s.Confidence)

@@ -13,6 +13,7 @@ var RobustLine = &Remedy{
 	Do:     "look at the rows far off their line; if they are right, quote the robust line given here beside the ordinary one",
 	Short:  "by a line that wild rows hardly move",
 	Source: "MM-estimate; Yohai 1987, Ann. Stat. 15:642",
+	Whole:  true,
 	Answer: func(s Start) (model.Answers, error) {
 		a := s.Fit.Answers(s.Confidence)
 		if !s.Fit.QuotesOwnLines() {
