@@ -46,6 +46,9 @@ func (e *examination) result() *Result {
 	if e.request.PerRow {
 		r.Rows = e.rows()
 	}
+	if e.request.Draw {
+		r.Drawing = e.drawing()
+	}
 	return r
 }
 

@@ -20,6 +20,7 @@ type Request struct {
 	Settings rules.Settings
 	Off      []string // names of rules not to be run
 	PerRow   bool     // add row diagnostics to the result
+	Draw     bool     // add what figures show to the result
 	Command  string   // how this audit was called, for the suggestion: "footing audit kelp.csv"
 }
 

@@ -73,6 +73,9 @@ type Result struct {
 	Rows        []Row        `json:"rows,omitempty"`
 	Suggested   *Suggestion  `json:"suggested,omitempty"`
 	Verdict     Verdict      `json:"verdict"`
+
+	// Drawing is what figures show besides; nil unless asked for.
+	Drawing *Drawing `json:"-"`
 }
 
 // Input is what was read.

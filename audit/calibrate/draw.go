@@ -107,6 +107,26 @@ func (d *drawer) each(stream string, tables int, newErrors func() func(*rand.Ran
 	workers.Wait()
 }
 
+// Sound draws the residuals of sound tables of a pass's design from the named
+// stream and hands them to each, one table after the other. The sample is
+// overwritten by the next.
+func Sound(p *rules.Pass, stream string, tables int, each func(*rules.Sample)) {
+	d := newDrawer(p, &family{first: []int{0}}, "")
+	var random *rand.Rand
+	w := d.newWorker(func(random *rand.Rand, z []float64) {
+		for i := range z {
+			z[i] = random.NormFloat64()
+		}
+	})
+	for r := range tables {
+		if r%block == 0 {
+			random = numeric.BlockStream(p.Settings.Seed, stream, r/block)
+		}
+		w.table(random)
+		each(w.sample)
+	}
+}
+
 // worker draws one table after the other with memory of its own.
 type worker struct {
 	d          *drawer

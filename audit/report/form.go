@@ -18,6 +18,9 @@ type Form struct {
 	// file is replaced without being asked for.
 	Marks []string
 
+	// Draws marks a form with figures: the result needs its drawing.
+	Draws bool
+
 	Write func(w io.Writer, r *audit.Result, o Options) error
 }
 
@@ -40,6 +43,7 @@ var Forms = []*Form{
 	textForm,
 	jsonForm,
 	markdownForm,
+	htmlForm,
 	sarifForm,
 	junitForm,
 	statementForm,

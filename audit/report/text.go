@@ -1,5 +1,5 @@
 // Package report writes an audit's result in one form each: text for a
-// terminal, JSON for programs. It computes nothing; colour, widths and the
+// terminal, JSON for programs, HTML for a reader of the sheet. It computes nothing; colour, widths and the
 // number of places shown are decided here and nowhere else.
 package report
 
@@ -314,8 +314,8 @@ func whereWords(f audit.Finding, o TextOptions) string {
 	return text
 }
 
-// triedWords tells the answers under a remedy.
-func triedWords(r audit.Remedy) string {
+// triedFigures tells the answers under a remedy.
+func triedFigures(r audit.Remedy) []string {
 	var all []string
 	for _, s := range r.Slopes {
 		name := "slope"
@@ -332,11 +332,16 @@ func triedWords(r audit.Remedy) string {
 	if r.Difference != nil && r.Difference.P.Defined() {
 		all = append(all, "difference "+wording.P(float64(r.Difference.P)))
 	}
+	return all
+}
+
+// triedWords tells the answers under a remedy, and whether they hold.
+func triedWords(r audit.Remedy) string {
 	end := "the answers hold"
 	if r.AnswerChanges {
 		end = "an answer changes"
 	}
-	return strings.Join(all, ", ") + ": " + end + "."
+	return strings.Join(triedFigures(r), ", ") + ": " + end + "."
 }
 
 func writeCounts(p *page, r *audit.Result, o TextOptions) {

@@ -14,6 +14,7 @@ import (
 	"golang.org/x/term"
 
 	"footing/audit"
+	"footing/audit/figure"
 	"footing/audit/report"
 	"footing/readers"
 	"footing/rules"
@@ -39,6 +40,7 @@ type auditFlags struct {
 	format  string
 	outputs []string
 	marked  string
+	figures string
 	force   bool
 	sketch  bool
 	perRow  bool
@@ -122,6 +124,7 @@ func (f *auditFlags) add(cmd *cobra.Command) {
 
 	flags.StringVar(&f.format, "format", "text", "form of the report: "+listedForms())
 	flags.StringArrayVar(&f.outputs, "output", nil, "write the report to FILE too, in the form that its extension names, or FORMAT=FILE (repeatable)")
+	flags.StringVar(&f.figures, "figures", "", "write the figures of the HTML report to a folder, as SVG")
 	flags.StringVar(&f.marked, "marked", "", "write a workbook with the named cells marked to FILE.xlsx")
 	flags.BoolVar(&f.force, "force", false, "replace files that footing did not write")
 	flags.BoolVar(&f.sketch, "sketch", false, "draw residuals against fitted values in the text report")
@@ -155,7 +158,7 @@ func (f *auditFlags) run(cmd *cobra.Command, file string) error {
 			StatedSlope: given(cmd, "stated-slope", f.stated), PredictorError: given(cmd, "predictor-error", f.xError),
 			Seed: f.seed, Replicates: f.replicates,
 		},
-		Off: off, PerRow: f.perRow || f.sketch, Command: command + f.readingArgs(),
+		Off: off, PerRow: f.perRow || f.sketch, Command: command + f.readingArgs(), Draw: f.draws(out),
 	})
 	if err != nil {
 		return err
@@ -277,10 +280,29 @@ func (f *auditFlags) readsAgain(out *outputs) bool {
 	return again
 }
 
+// draws reports whether some output has figures.
+func (f *auditFlags) draws(out *outputs) bool {
+	draws := f.figures != "" || (!f.quiet && report.FormNamed(f.format).Draws)
+	for _, o := range out.taken {
+		draws = draws || o.form != nil && o.form.Draws
+	}
+	return draws
+}
+
 // write makes every report, puts the files in their places and then prints, so
 // that a fault leaves nothing behind.
 func (f *auditFlags) write(cmd *cobra.Command, out *outputs, s *source, r *audit.Result) error {
+	if f.figures != "" {
+		for _, drawn := range figure.All(r) {
+			if err := out.addFigure(f.figures, drawn); err != nil {
+				return err
+			}
+		}
+	}
 	for _, o := range out.taken {
+		if o.text != nil {
+			continue // a figure
+		}
 		var whole bytes.Buffer
 		var err error
 		if o.form == nil {

@@ -13,6 +13,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"footing/audit/figure"
 	"footing/audit/report"
 )
 
@@ -20,7 +21,7 @@ import (
 type output struct {
 	path  string       // as it was given
 	place string       // where it is written: links followed
-	form  *report.Form // nil for a marked workbook
+	form  *report.Form // nil for a marked workbook and for figures
 	text  []byte       // what it will hold
 }
 
@@ -30,6 +31,7 @@ type outputs struct {
 	force bool
 	input fs.FileInfo // of what is audited; nil when it is no file
 	taken []*output
+	made  string // a folder that is to be made first; "" for none
 }
 
 // parseOutput reads --output: FORMAT=FILE, or FILE whose extension names the
@@ -86,6 +88,22 @@ func (o *outputs) add(flag, path string, form *report.Form) error {
 		}
 	}
 	o.taken = append(o.taken, &output{path: path, place: place, form: form})
+	return nil
+}
+
+// addFigure takes on a figure that is to be written to a folder, which is made
+// when it is not there.
+func (o *outputs) addFigure(folder string, drawn figure.Figure) error {
+	path := filepath.Join(folder, drawn.Name+".svg")
+	if _, err := os.Stat(folder); errors.Is(err, fs.ErrNotExist) {
+		o.made = folder
+		o.taken = append(o.taken, &output{path: path, place: path, text: report.Figure(drawn.SVG)})
+		return nil
+	}
+	if err := o.add("--figures", path, nil); err != nil {
+		return err
+	}
+	o.taken[len(o.taken)-1].text = report.Figure(drawn.SVG)
 	return nil
 }
 
@@ -181,6 +199,11 @@ func writtenHere(path string) (bool, error) {
 // and none that was there has changed, unless the system failed between two
 // renames.
 func (o *outputs) commit() error {
+	if o.made != "" {
+		if err := os.MkdirAll(o.made, 0o777); err != nil {
+			return fmt.Errorf("--figures %s: can't be made: %w; nothing was written", o.made, cause(err))
+		}
+	}
 	var parts []string
 	defer func() {
 		for _, part := range parts {
