@@ -43,7 +43,9 @@ func constantVarianceChance(p *Pass) (*Chance, string) {
 	}
 	c := &Chance{Members: []Member{p.koenker()}, Floor: p.spreadFloor()}
 	c.Members = append(c.Members, p.spreadAlong()...)
-	if len(p.Design.Groups) > 1 {
+	// The two rows of a pair are as far from its median as each other: pairs alone
+	// leave nothing within groups to compare with.
+	if len(p.Design.Groups) > 1 && slices.Max(p.Design.GroupSizes()) > 2 {
 		if m, ok := p.brownForsythe(); ok {
 			c.Members = append(c.Members, m)
 		}

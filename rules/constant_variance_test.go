@@ -67,3 +67,17 @@ func TestConstantVarianceHasNothingToVaryWith(t *testing.T) {
 	p = passOf(t, s, plainRoles)
 	expect(t, p, ask(t, ConstantVariance, p), NotAsked, "one row is left")
 }
+
+// TestConstantVarianceOfPairs: two rows of a group are as far from its median as
+// each other, so the test between groups is left out.
+func TestConstantVarianceOfPairs(t *testing.T) {
+	s := &sheet{header: []string{"g", "y"}}
+	for i, y := range []string{"1.137", "2.291", "4.618", "9.343"} {
+		s.add([]string{"a", "b"}[i/2], y)
+	}
+	p := passOf(t, s, meansRoles)
+	chance, reason := ConstantVariance.Chance(p)
+	if chance == nil || len(chance.Members) != 1 || chance.Members[0].Test.Name != koenkerName {
+		t.Fatalf("members %v: %s", chance, reason)
+	}
+}

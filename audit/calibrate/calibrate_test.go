@@ -250,3 +250,25 @@ func TestPointOfClosedP(t *testing.T) {
 		t.Errorf("the point is %v, want %v", got, want)
 	}
 }
+
+// TestTiesCount: values that differ by rounding are tied, and so are infinite
+// ones.
+func TestTiesCount(t *testing.T) {
+	inf := math.Inf(1)
+	for _, c := range []struct {
+		sorted []float64
+		v      float64
+		want   float64
+	}{
+		{[]float64{1, 2, 3, 4}, 3, 0.5},
+		{[]float64{4 - 1e-15, 4 - 2e-16, 4, 4 + 1e-15}, 4 + 1e-15, 1},
+		{[]float64{1, 2, inf, inf}, inf, 0.5},
+		{[]float64{1, 2, 3, inf}, 1, 1},
+		{[]float64{0, 0, 0, 1}, 0, 1},
+		{[]float64{1, 2, 3, 4}, 3 + 1e-6, 0.25},
+	} {
+		if got := exceeding(c.sorted, c.v); got != c.want {
+			t.Errorf("%v of %v: %v, want %v", c.v, c.sorted, got, c.want)
+		}
+	}
+}
