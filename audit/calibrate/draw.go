@@ -122,7 +122,7 @@ func Sound(p *rules.Pass, stream string, tables int, each func(*rules.Sample)) {
 		if r%block == 0 {
 			random = numeric.BlockStream(p.Settings.Seed, stream, r/block)
 		}
-		w.table(random, nil)
+		w.table(random)
 		each(w.sample)
 	}
 }
