@@ -134,10 +134,6 @@ func (c *canvas) line(class string, x1, y1, x2, y2 float64) {
 	c.path(class, "M"+num(x1)+" "+num(y1)+"L"+num(x2)+" "+num(y2))
 }
 
-func (c *canvas) rect(class string, x, y, w, h float64) {
-	fmt.Fprintf(&c.body, `<rect class="%s" x="%s" y="%s" width="%s" height="%s"/>`, class, num(x), num(y), num(w), num(h))
-}
-
 // polyline joins places; NaN breaks it.
 func polyline(x, y []float64) string {
 	var b strings.Builder

@@ -3,7 +3,6 @@ package figure
 import (
 	"fmt"
 	"math"
-	"strings"
 
 	"footing/audit"
 	"footing/rules/wording"
@@ -52,7 +51,7 @@ func drawPower(s *sheet) bool {
 		s.text(right+10, y+32, "start", "b", fmt.Sprintf("%.0f", math.Round(100*power)))
 		breach := "its breach"
 		if f.Breach != nil {
-			breach = strings.TrimSuffix(*f.Breach, ",")
+			breach = *f.Breach
 		}
 		s.say("%s: %s would have been caught %.0f times in 100", f.Rule, breach, math.Round(100*power))
 	}

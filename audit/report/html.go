@@ -1,7 +1,6 @@
 package report
 
 import (
-	"bytes"
 	_ "embed" // for the page
 	"fmt"
 	"html/template"
@@ -35,21 +34,24 @@ var htmlForm = &Form{
 // pageTemplate shows text from the data with t, which makes visible what would
 // act on a display; what would act on a parser html/template escapes.
 var pageTemplate = sync.OnceValue(func() *template.Template {
-	return template.Must(template.New("page").Funcs(template.FuncMap{"t": shown}).Parse(pageText))
+	return template.Must(template.New("page").Funcs(template.FuncMap{"t": wording.Printable}).Parse(pageText))
 })
-
-// shown makes text from the data visible, and a very long word short.
-func shown(s string) string { return wording.Printable(s) }
 
 // HTML writes the result as one page that needs nothing else: no script, nothing
 // fetched. With Result.Drawing it has the figures.
 func HTML(w io.Writer, r *audit.Result, o HTMLOptions) error {
-	var b bytes.Buffer
+	var b strings.Builder
 	if err := pageTemplate().Execute(&b, newWebPage(r, o)); err != nil {
 		return err
 	}
-	_, err := w.Write(b.Bytes())
-	return err
+	// The last word on what acts on a display, wherever it came from; the page's
+	// own line ends stay.
+	for line := range strings.Lines(b.String()) {
+		if _, err := io.WriteString(w, wording.Printable(strings.TrimSuffix(line, "\n"))+"\n"); err != nil {
+			return err
+		}
+	}
+	return nil
 }
 
 // webPage is what the template says, in its order.

@@ -99,6 +99,9 @@ func (w *schemaWalk) structure(name string, of reflect.Type, n *node) {
 	var required []string
 	left := maps.Clone(n.Properties)
 	for f := range of.Fields() {
+		if f.Type == reflect.TypeFor[*audit.Drawing]() {
+			continue // for figures only; --per-row has what JSON tells of rows
+		}
 		key, options, _ := strings.Cut(f.Tag.Get("json"), ",")
 		if key == "-" {
 			continue // for other forms of report only
