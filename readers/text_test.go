@@ -35,7 +35,7 @@ func TestTextTables(t *testing.T) {
 		},
 		{
 			name: "bars at the ends of some lines only",
-			text: lines("|x|y", "|1|2", "a|3|4"),
+			text: lines("|x|y|", "|1|2|", "a|3|4|"),
 			want: lines("header 1: A  text; B x number; C y number;", `2: _ 1 2`, `3: "a" 3 4`),
 		},
 		{
@@ -51,8 +51,8 @@ func TestTextTables(t *testing.T) {
 		},
 		{
 			name: "a tie of delimiters goes to the one whose columns are numbers",
-			text: lines("a;b", "1,5;2,5", "2,5;3,5"),
-			want: lines("header 1: A a number; B b number;", `2: 1.5 2.5`, `3: 2.5 3.5`),
+			text: lines("a,b;c,d", "1,5;2,5", "2,5;3,5"),
+			want: lines("header 1: A a,b number; B c,d number;", `2: 1.5 2.5`, `3: 2.5 3.5`),
 		},
 		{
 			name: "one column, in which blank lines are blank cells",
