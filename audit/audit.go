@@ -20,6 +20,7 @@ type Request struct {
 	Settings rules.Settings
 	Off      []string // names of rules not to be run
 	PerRow   bool     // add row diagnostics to the result
+	Draw     bool     // add what figures show to the result
 	Command  string   // how this audit was called, for the suggestion: "footing audit kelp.csv"
 }
 
@@ -72,7 +73,7 @@ func Table(t *readers.Table, request Request) (*Result, error) {
 
 // examine fits the model of the roles and runs every rule.
 func examine(t *readers.Table, request Request) (*examination, error) {
-	p := &rules.Pass{Table: t, Settings: request.Settings}
+	p := &rules.Pass{Table: t, Settings: request.Settings, Profiles: rules.Profiles{}}
 	if request.Roles.Named() {
 		columns, err := model.Resolve(t, request.Roles)
 		if err != nil {

@@ -133,7 +133,10 @@ func TestNIST(t *testing.T) {
 // straight line must be found wanting.
 func TestLoadCell(t *testing.T) {
 	r := auditFile(t, "../testdata/reference/nist/pontius.csv", model.Roles{Response: "y", Predictors: []string{"x1"}})
+	// Exact arithmetic on those rows; the Handbook prints 0.0021712694 and
+	// 214.7464, which are from memory here.
 	agree(t, "residual SD of the line", r.Model.ResidualSD, 0.0021712726, 1e-7, 0)
+	agree(t, "lack-of-fit F", figureOf(r, "linearity", "lack_of_fit_f"), 214.74692, 1e-7, 0)
 	if f := findingOf(t, r, "linearity"); f.State != audit.Warn && f.State != audit.Stop {
 		t.Errorf("linearity is %s: %s", f.State, f.Message)
 	}
@@ -227,56 +230,6 @@ func TestInvariance(t *testing.T) {
 			}
 			if c.result.Verdict.State != start.Verdict.State {
 				t.Errorf("verdict %s, was %s", c.result.Verdict.State, start.Verdict.State)
-			}
-		})
-	}
-}
-
-// TestDegenerateTables gives a true sentence and no NaN, whatever the table.
-func TestDegenerateTables(t *testing.T) {
-	line := model.Roles{Response: "y", Predictors: []string{"x"}}
-	grouped := model.Roles{Response: "y", Predictors: []string{"x"}, Group: "g"}
-	means := model.Roles{Response: "y", Group: "g"}
-	cases := []struct {
-		name, csv string
-		roles     model.Roles
-		rule      string
-		state     audit.State
-	}{
-		{"one row", "x,y\n1,2\n", line, "sample-size", audit.Stop},
-		{"two rows", "x,y\n1,2\n2,5\n", line, "sample-size", audit.Stop},
-		{"a perfect line", "x,y\n1,2\n2,4\n3,6\n4,8\n", line, "sample-size", audit.Stop},
-		{"a constant response", "x,y\n1,2\n2,2\n3,2\n4,2\n", line, "constant-column", audit.Stop},
-		{"a constant predictor", "x,y\n1,2\n1,3\n1,5\n1,4\n", line, "constant-column", audit.Stop},
-		{"nothing but gaps", "x,y\n1,\n,3\n2,\n,5\n", line, "sample-size", audit.Stop},
-		{"more parameters than rows", "g,x,y\na,1,2\na,2,3\nb,1,5\nb,3,4\nc,1,2\n", grouped, "sample-size", audit.Stop},
-		{"a group of one row", "g,x,y\na,1,2\na,2,3.5\na,3,4\na,4,6\na,5,6\na,6,8\na,7,9\nb,3,4\n", grouped, "sample-size", audit.Stop},
-		{"one group", "g,x,y\na,1,2\na,2,3.5\na,3,4\na,4,6\na,5,6\na,6,8\na,7,9\n", grouped, "group-balance", audit.Skip},
-		{"one x and one other row", "x,y\n8,6.58\n8,5.76\n8,7.71\n8,8.84\n8,8.47\n19,12.5\n", line, "leverage", audit.Warn},
-		{"means of two", "g,y\na,1\na,2\nb,4\nb,6\n", means, "sample-size", audit.Thin},
-		{"means of one group", "g,y\na,1\na,2\na,4\na,6\n", means, "group-balance", audit.Skip},
-		{"copies of a predictor", "x,z,y\n1,2,1\n2,4,3\n3,6,2\n4,8,5\n5,10,4\n6,12,7\n", model.Roles{Response: "y", Predictors: []string{"x", "z"}}, "collinearity", audit.Stop},
-	}
-	for _, c := range cases {
-		t.Run(c.name, func(t *testing.T) {
-			r := auditText(t, c.csv, c.roles)
-			if f := findingOf(t, r, c.rule); f.State != c.state {
-				t.Errorf("%s is %s, want %s: %s", c.rule, f.State, c.state, f.Message)
-			}
-			raw, err := json.Marshal(r)
-			if err != nil {
-				t.Fatal(err)
-			}
-			for _, word := range []string{"NaN", "Inf", "undefined"} {
-				if strings.Contains(string(raw), word) {
-					t.Errorf("the result holds %q: %s", word, raw)
-				}
-			}
-			if c.state == audit.Stop && r.Verdict.State != audit.Unsound {
-				t.Errorf("verdict %s", r.Verdict.State)
-			}
-			if c.state == audit.Stop && len(r.Verdict.DoNotQuote) == 0 {
-				t.Error("nothing is kept from being quoted")
 			}
 		})
 	}

@@ -139,7 +139,7 @@ func (s *study) constantVariance(t *testing.T) {
 		{"lognormal", 2},
 	} {
 		p := even(50, 2, c.shape).pass(1, replicates)
-		ratio := spreadOf(ownBreach(t, rules.ConstantVariance, p), p.Fit.N())
+		ratio := fanRatio(ownBreach(t, rules.ConstantVariance, p), p.Fit.N())
 		s.value("7", "widest over narrowest SD of the fan", designName(50, 2, c.shape), c.ratio, ratio, 0.01, 2)
 	}
 	s.ownPower(t, "7", rules.ConstantVariance,
@@ -158,7 +158,7 @@ func (s *study) constantVariance(t *testing.T) {
 
 // spreadOf gives the largest over the smallest SD of errors that are normal
 // deviates times an SD for each row: the same deviates are drawn without it.
-func spreadOf(trouble rules.Trouble, n int) float64 {
+func fanRatio(trouble rules.Trouble, n int) float64 {
 	z := make([]float64, n)
 	trouble.New()(numeric.Stream(1, "study/spread"), z)
 	plain := numeric.Stream(1, "study/spread")

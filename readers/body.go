@@ -17,7 +17,8 @@ type body struct {
 	units   map[int]string  // from the row of units, by grid column
 	names   map[string]bool // of the header, as foldName makes them
 	forms   map[int]*labelForms
-	marks   []uint8 // by record, see markRows
+	marks   []uint8         // by record, see markRows
+	levels  map[[2]int]bool // by column and word, see isLevel
 	figures *figures
 }
 
@@ -205,9 +206,13 @@ func (b *body) splitRepeated(columns []int) []int {
 // passComments drops the lines that start with # unless they are rows.
 func (b *body) passComments() {
 	passed := 0
+	var numeric []int
+	if len(b.g.comments) > 0 {
+		numeric = b.numericColumns()
+	}
 	for _, r := range b.g.comments {
 		record := int(r)
-		if record == b.header || record >= b.first && b.isRow(record) {
+		if record == b.header || record >= b.first && b.isRow(record, numeric) {
 			continue
 		}
 		b.fate[record] = drop
@@ -223,17 +228,13 @@ func (b *body) passComments() {
 
 // isRow tells whether a line that starts with # is a row all the same: it has as
 // many fields as the header and numbers where they belong.
-func (b *body) isRow(record int) bool {
+func (b *body) isRow(record int, numeric []int) bool {
 	if b.header >= 0 && b.g.fields.at(record) != b.g.fields.at(b.header) {
 		return false
 	}
 	numbers := 0
-	for _, c := range b.columns {
-		s := b.g.seek(c)
-		if !b.isNumeric(c, b.first, b.end) {
-			continue
-		}
-		switch class(s.kind(record)) {
+	for _, c := range numeric {
+		switch class(b.g.seek(c).kind(record)) {
 		case asNumber:
 			numbers++
 		case asWord:
@@ -264,12 +265,18 @@ func (b *body) unitsRow() {
 		if text == "" {
 			continue
 		}
+		dash := text == "-" || text == "–"
 		switch {
+		case class(b.g.seek(c).kind(r)) == asCode && !dash:
+			return // a row with a missing value
 		case !b.isNumeric(c, r+1, b.end):
+			if b.repeats(c, r) {
+				return // a label that other rows have
+			}
 			label++
 		case isUnit(text):
 			known++
-		case text == "-" || text == "–":
+		case dash:
 		default:
 			other++
 			if len([]rune(text)) > 15 {
@@ -309,11 +316,20 @@ func (b *body) isRuler(r int) bool {
 
 // sortColumns tells number columns from label columns by the rows below.
 func (b *body) sortColumns() {
+	b.numeric = b.numericColumns()
 	for _, c := range b.columns {
-		if b.isNumeric(c, b.first, b.end) {
-			b.numeric = append(b.numeric, c)
-		} else {
+		if !slices.Contains(b.numeric, c) {
 			b.labels = append(b.labels, c)
 		}
 	}
+}
+
+func (b *body) numericColumns() []int {
+	var out []int
+	for _, c := range b.columns {
+		if b.isNumeric(c, b.first, b.end) {
+			out = append(out, c)
+		}
+	}
+	return out
 }

@@ -68,8 +68,12 @@ func readText(src source, opt Options) (*Table, error) {
 func (o *Options) given() []string {
 	var out []string
 	for _, f := range [...]struct{ name, value string }{
-		{"encoding", o.Encoding}, {"delimiter", o.Delimiter}, {"decimal", o.Decimal},
-		{"header-row", o.HeaderRow}, {"sheet", o.Sheet}, {"range", o.Range},
+		{"encoding", o.Encoding},
+		{"delimiter", o.Delimiter},
+		{"decimal", o.Decimal},
+		{"header-row", o.HeaderRow},
+		{"sheet", o.Sheet},
+		{"range", o.Range},
 	} {
 		if f.value != "" {
 			out = append(out, f.name)

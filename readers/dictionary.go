@@ -87,15 +87,6 @@ func (d *dictionary) add(text []byte, slot int, kind CellKind) uint32 {
 	return code
 }
 
-// seek gives the code of a text without taking it in.
-func (d *dictionary) seek(text string) (code uint32, ok bool) {
-	if d.slots == nil {
-		return 0, false
-	}
-	code, _, ok = d.find([]byte(text))
-	return code, ok
-}
-
 func (d *dictionary) rehash() {
 	d.slots = make([]uint32, 2*len(d.slots))
 	mask := len(d.slots) - 1

@@ -162,7 +162,7 @@ func (l *layout) headerWithin(a, b int, found []candidate) (record int, sawNumbe
 		// write above their tables, have far fewer.
 		fuller := n > above && (!sawNumbers || above <= 2 || 5*above <= 3*n)
 		switch {
-		case l.numbers[r] > 0:
+		case l.numbers[r] > 0 && !(fuller && l.namedByMeasures(r)):
 			sawNumbers = true
 		case l.words[r] == 0 || !fuller || l.again(r, found) || l.repeatsData(r):
 		case l.heads(r, r+1, b) || !l.numbersIn(r+1, b):
@@ -274,19 +274,52 @@ func (l *layout) wordCount(col int, code uint32) int {
 	return int(w.n[code])
 }
 
+// namedByMeasures tells whether the cells of a record that look like numbers are
+// names such as "4 °C" or "10 cm", over columns of numbers without a unit.
+func (l *layout) namedByMeasures(r int) bool {
+	if l.words[r] == 0 {
+		return false
+	}
+	for _, c := range l.columns {
+		s := l.g.seek(c)
+		k := s.kind(r)
+		if class(k) != asNumber {
+			continue
+		}
+		if CellKind(k&kindMask) != measureText {
+			return false
+		}
+		plain, measures := 0, 0
+		for i := r + 1; i < min(l.g.records, r+100); i++ {
+			switch CellKind(s.kind(i) & kindMask) {
+			case Number:
+				plain++
+			case measureText:
+				measures++
+			}
+		}
+		if plain <= measures {
+			return false
+		}
+	}
+	return true
+}
+
 // repeatsData tells whether a record of texts only is more likely a row with
 // faults than a header: one of its texts stands elsewhere in the same column.
 func (l *layout) repeatsData(r int) bool {
 	for _, c := range l.columns {
-		s := l.g.seek(c)
-		if s == nil || class(s.kind(r)) != asWord {
-			continue
-		}
-		if l.wordCount(c, s.word(r)) > 2 {
+		if s := l.g.seek(c); class(s.kind(r)) == asWord && s.kind(r)&markWord != 0 && l.wordCount(c, s.word(r)) > 2 {
 			return true
 		}
 	}
 	return false
+}
+
+// repeats tells whether another record has the same text in a column.
+func (l *layout) repeats(c, r int) bool {
+	s := l.g.seek(c)
+	return s.kind(r)&markWord != 0 && l.wordCount(c, s.word(r)) > 1
 }
 
 // headless tells whether rows above the best candidate are data without a header:

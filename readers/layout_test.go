@@ -2,6 +2,7 @@ package readers_test
 
 import (
 	"fmt"
+	"math/rand/v2"
 	"strings"
 	"testing"
 
@@ -68,6 +69,7 @@ func TestTableIsFound(t *testing.T) {
 		{name: "blank rows between", text: survey(frondNames, 4, "", 4, ",,,", 4), header: 1, rows: "2-5 7-10 12-15"},
 		{name: "a header once more", text: survey(frondNames, 4, frondNames, 4), header: 1, rows: "2-5 7-10", stray: "6 header again"},
 		{name: "a header once more in other case", text: survey(frondNames, 4, "Frond,Site,Temperature,growth", 4), header: 1, rows: "2-5 7-10", stray: "6 header again"},
+		{name: "a header once more above the longer part", text: survey(frondNames, 3, "", frondNames, 8), header: 1, rows: "2-4 7-14", stray: "6 header again"},
 		{name: "a header once more after a gap", text: survey(frondNames, 4, "", frondNames, 4), header: 1, rows: "2-5 8-11", stray: "7 header again"},
 		{
 			name: "a header in another order", text: survey(frondNames, 4, "site,frond,growth,temperature", "exposed,F05,3.1,7.2", "sheltered,F06,3.2,7.5", frondNames, 4),
@@ -85,6 +87,22 @@ func TestTableIsFound(t *testing.T) {
 		{name: "a last row that is near the mean is a row", header: 1, rows: "2-6", text: lines("site,x", "a,3", "b,5", "c,4", "a,4", "b,4")},
 		{name: "a group that is called N", header: 1, rows: "2-7", text: lines("plot,dose,y", "1,N,3.5", "2,P,4.5", "3,K,5.25", "4,N,3.25", "5,P,4", "6,N,5")},
 		{name: "a group that is called total", header: 1, rows: "2-7", text: lines("plot,part,y", "p1,total,3.5", "p2,leaf,4.5", "p3,stem,5.25", "p4,total,3.25", "p5,leaf,4", "p6,total,5")},
+		{
+			name: "deviations under means", header: 1, rows: "2-3 6-7", stray: "4 summary, 5 summary, 8 summary, 9 summary",
+			text: lines("frond,site,x,y", "F1,a,1.25,3.5", "F2,a,2.5,4.5", "mean,a,1.875,4", "sd,a,0.88,0.71", "F3,b,5.25,3.5", "F4,b,2.5,4.5", "mean,b,3.875,4", "sd,b,1.94,0.71"),
+		},
+		{
+			name: "a level that is called max, once without its site", header: 1, rows: "2-7",
+			text: lines("dose,site,y", "max,a,3.5", "none,a,4.5", "max,b,5.25", "none,b,3.25", "max,,4", "none,a,5"),
+		},
+		{name: "a row with codes after a gap", text: survey(frondNames, 4, "", "F05,exposed,NA,NA", "", 4), header: 1, rows: "2-5 7-7 9-12"},
+		{name: "a row with texts after a gap", text: survey(frondNames, 4, "", "F05,exposed,torn,lost", "", 4), header: 1, rows: "2-5 7-7 9-12"},
+		{name: "a row with codes is no row of units", text: survey(frondNames, "F00,place,in,NA", 8), header: 1, rows: "2-10"},
+		{name: "a row with a known label is no row of units", text: survey(frondNames, "F00,exposed,m,s", 8), header: 1, rows: "2-10"},
+		{name: "names that are measures", text: lines("site,4 °C,12 °C", "a,1,2", "b,3,4"), header: 1, rows: "2-3"},
+		{name: "measures under their names", text: lines("site,x", "a,4 °C", "b,12 °C"), header: 1, rows: "2-3"},
+		{name: "a last label that is called sd", header: 1, rows: "2-5", text: lines("plot,x", "sa,1.5", "sb,2.5", "sc,9", "sd,3")},
+		{name: "an average that is not of these rows", header: 1, rows: "2-4", stray: "5 summary", text: lines("plot,x", "sa,1.5", "sb,2.5", "sc,9", "Average,7")},
 		{name: "a footer after a gap", text: survey(frondNames, 8, "", "thermometer no. 4"), header: 1, rows: "2-9", stray: "11 note"},
 		{name: "a footer after a row of commas", text: survey(frondNames, 8, ",,,", "thermometer no. 4,,,"), header: 1, rows: "2-9", stray: "11 note"},
 		{name: "a footer at once", text: survey(frondNames, 8, "measured by hand,,,"), header: 1, rows: "2-9", stray: "10 note"},
@@ -256,6 +274,7 @@ func TestUnevenRows(t *testing.T) {
 		},
 		{"blank fields too many", survey("site,x", "a,1", "b,2,,", "c,3"), "uneven 3: 4 of 2, used true"},
 		{"the last fields left out", survey("site,x,y,note", "a,1,2,", "b,2,3", "c,3", "a,4,5,ok"), "uneven 3: 3 of 4, used true\nuneven 4: 2 of 4, used true"},
+		{"two rows in thirty", survey("site,x", strings.Repeat("a,1\n", 14)+"b,2,3", strings.Repeat("a,1\n", 14)+"b,4,5"), "uneven 16: 3 of 2, used false\nuneven 31: 3 of 2, used false"},
 		{"a field left out before a text", survey("site,x,part,y", "a,1,leaf,2", "b,leaf,3", "c,3,leaf,4", "a,4,stem,5"), "uneven 3: 3 of 4, used false"},
 		{"all rows end in a delimiter", survey("site,x", "a,1,", "b,2,", "c,3,"), ""},
 		{"all rows lack the last field", survey("site,x,note", "a,1", "b,2", "c,3"), ""},
@@ -320,6 +339,7 @@ func TestDecimalSign(t *testing.T) {
 		{"the majority reads the file", lines("s;x", "a;7,5", "b;8,5", "c;9.5"), ",", `7.5 8.5 "9.5"`},
 		{"the majority reads the file, the other way", lines("s;x", "a;7.5", "b;8.5", "c;9,5"), ".", `7.5 8.5 "9,5"`},
 		{"commas between thousands where points decide", lines("s,x", "a,7.5", `b,"2,517"`, `c,"1,002,517.5"`), ".", "7.5 2517 1.0025175e+06"},
+		{"points are no evidence where a comma is", "s\tx\na\t1.042\nb\t2.517\nc\t7,5\n", ",", "1042 2517 7.5"},
 		{"whole numbers need no sign", lines("s;x", "a;7", "b;8"), ".", "7 8"},
 		{"spaces between thousands", lines("s;x", "a;1 042,5", "b;7"), ",", "1042.5 7"},
 	} {
@@ -350,5 +370,48 @@ func TestDecimalSignOfTheWholeFile(t *testing.T) {
 	table := read(t, b.String(), readers.Options{})
 	if v, ok := table.Columns[1].Number(table.Len() - 1); !ok || v != 7.25 || table.Reading.Decimal != "," {
 		t.Errorf("the last number is %v (%t), the sign %q", v, ok, table.Reading.Decimal)
+	}
+}
+
+// No sound table loses a row: whatever its groups are called and wherever cells are
+// missing, all rows are records and none is taken for a sum, a note or a title.
+func TestSoundTablesLoseNoRow(t *testing.T) {
+	rng := rand.New(rand.NewPCG(11, 3))
+	groups := [...][]string{
+		{"a", "b"},
+		{"exposed", "sheltered"},
+		{"N", "P", "K", "NPK"},
+		{"max", "min"},
+		{"total", "part"},
+		{"1", "2", "3"},
+		{"A1", "B2"},
+		{"North bay", "South bay"},
+		{"control", "high dose"},
+		{"m", "f"},
+		{"mean", "median"},
+	}
+	islands := [...]string{"Porto Santo", "Rio", "La Palma", "Hiva Oa", "Ile", "Sal", "Bom dia", "Ano"}
+	for k := range 600 {
+		n := 8 + rng.IntN(50)
+		decimals, group, missing := rng.IntN(4), groups[rng.IntN(len(groups))], [...]string{"", "NA", "-"}[rng.IntN(3)]
+		share := [...]float64{0, 0.05, 0.15}[rng.IntN(3)]
+		design, labels := rng.IntN(2) == 0, rng.IntN(4)
+		text := []string{"label,group,x,y"}
+		for i := range n {
+			label := [...]string{fmt.Sprintf("F%02d", i+1), fmt.Sprint(i + 1), islands[rng.IntN(len(islands))], fmt.Sprintf("plot %d", 1+i%5)}[labels]
+			x := 10 * rng.Float64()
+			if design {
+				x = float64(5 * (i % 5))
+			}
+			cells := []string{label, group[rng.IntN(len(group))], fmt.Sprintf("%.*f", decimals, x), fmt.Sprintf("%.*f", 3-decimals, 3+2*rng.NormFloat64())}
+			if c := rng.IntN(4); rng.Float64() < share {
+				cells[c] = missing
+			}
+			text = append(text, strings.Join(cells, ","))
+		}
+		table := read(t, lines(text...), readers.Options{})
+		if table.Len() != n || len(table.Reading.Stray)+len(table.Reading.Titles)+len(table.Faults()) > 0 {
+			t.Fatalf("table %d: %d of %d rows, stray %s:\n%s", k, table.Len(), n, kinds(table.Reading.Stray), lines(text...))
+		}
 	}
 }

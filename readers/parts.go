@@ -108,6 +108,7 @@ func (g *guard) Read(p []byte) (int, error) {
 type pass struct {
 	a      *archive
 	name   string // of the part, as it is in the archive
+	sheet  string // the sheet that the part holds, if any
 	where  func() string
 	body   io.ReadCloser
 	guard  *guard
@@ -213,7 +214,7 @@ func (p *pass) place() string {
 
 // broken refuses the part for a fault of its structure.
 func (p *pass) broken(what string) error {
-	return refuse(Pos{File: p.a.file}, "%s %s%s: save the workbook again, or take an older copy", p.name, what, p.place())
+	return refuse(Pos{File: p.a.file, Sheet: p.sheet}, "%s %s%s: save the workbook again, or take an older copy", p.name, what, p.place())
 }
 
 // damaged refuses the part for an error of the decoder or the archive.
@@ -229,7 +230,7 @@ func (p *pass) damaged(err error) error {
 		what = "is cut off"
 	}
 	return &Error{
-		Pos: Pos{File: p.a.file}, Err: err,
+		Pos: Pos{File: p.a.file, Sheet: p.sheet}, Err: err,
 		Msg: p.name + " " + what + p.place() + ": save the workbook again, or take an older copy",
 	}
 }

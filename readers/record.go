@@ -2,7 +2,7 @@ package readers
 
 import (
 	"bytes"
-	"fmt"
+	"errors"
 	"io"
 	"unicode/utf8"
 )
@@ -23,6 +23,7 @@ type scanner struct {
 	r       io.Reader
 	buf     []byte
 	at, end int
+	from    int // where the current record starts in buf
 	eof     bool
 	limit   int64 // longest record in bytes
 	delim   byte  // 0 when each line is one field
@@ -53,10 +54,10 @@ func newScanner(r io.Reader, delim byte, limit, length int64) *scanner {
 func bufferFor(length int64) int { return int(min(max(length+16, 512), readAhead)) }
 
 // errUnclosed tells that a quote opens at scanner.opens and never closes.
-var errUnclosed = fmt.Errorf("a quote opens and never closes")
+var errUnclosed = errors.New("a quote opens and never closes")
 
 // errLongLine tells that a record is longer than the limit.
-var errLongLine = fmt.Errorf("record beyond the limit")
+var errLongLine = errors.New("record beyond the limit")
 
 // scan moves to the next record, a blank line included; io.EOF ends. The fields
 // are good until the next call.
@@ -69,6 +70,7 @@ func (s *scanner) scan() error {
 		if n > 0 {
 			s.line = s.next
 			s.next += s.lines
+			s.from = s.at
 			s.at += n
 			return nil
 		}

@@ -135,12 +135,26 @@ func (b *body) sortRun(a, end, lastNumber int, marks []uint8, other *bool) {
 			b.drop(r, Note, "")
 			continue
 		case m&(rowWord|rowUnnamed) != 0 || r == tail-1 || r+1 < end && marks[r+1]&rowNumber == 0:
-			if word := b.figures.summary(r, m, r >= tail-8); word != "" {
+			if word := b.figures.summary(r, m, b.onlyWordsFollow(r+1, tail)); word != "" {
 				b.drop(r, Summary, word)
 				continue
 			}
 		}
 	}
+}
+
+// onlyWordsFollow tells whether all rows of [a, end) have a word for a sum: then the
+// row before them may stand at the end of the table.
+func (b *body) onlyWordsFollow(a, end int) bool {
+	if end-a > 8 {
+		return false
+	}
+	for ; a < end; a++ {
+		if b.fate[a] == keep && b.marks[a]&rowWord == 0 {
+			return false
+		}
+	}
+	return true
 }
 
 func (b *body) drop(r int, kind StrayKind, word string) {
@@ -160,7 +174,7 @@ func (b *body) hasOurShape(a, end int, marks []uint8) bool {
 		if b.g.sheet == "" && b.header >= 0 && b.g.fields.at(r) != b.g.fields.at(b.header) {
 			continue
 		}
-		if m&rowNumber != 0 && m&rowText == 0 && (m&rowLabel != 0 || len(b.must) == 0) {
+		if m&rowNumber != 0 && m&rowText == 0 && (m&rowLabel != 0 || len(b.must) == 0) || b.isLabelled(r) {
 			good++
 		}
 	}
@@ -169,6 +183,17 @@ func (b *body) hasOurShape(a, end int, marks []uint8) bool {
 		return false
 	}
 	return 2*good >= rows && good > 0
+}
+
+// isLabelled tells whether a row has all the labels that nearly every row has, and
+// they look like those of other rows. Its numbers may be missing or faulty.
+func (b *body) isLabelled(r int) bool {
+	for _, c := range b.must {
+		if class(b.g.seek(c).kind(r)) != asWord || !b.looksLikeLabel(c, r) {
+			return false
+		}
+	}
+	return len(b.must) > 0
 }
 
 // startsAgain tells whether a run starts with our header once more.
@@ -208,7 +233,7 @@ func (b *body) strayRun(a, end int, marks []uint8) {
 			continue
 		}
 		k, word := kind, ""
-		if k == Note && (marks[r]&(rowWord) != 0 || numbers > 0) {
+		if k == Note && (marks[r]&rowWord != 0 || numbers > 0) {
 			if word = b.summaryWord(r); word != "" {
 				k = Summary
 			}

@@ -57,7 +57,7 @@ func (b *book) readSheet(s bookSheet, opt Options, limits Limits, area *box) (*g
 		return nil, err
 	}
 	defer part.close()
-	p.pass = part
+	p.pass, part.sheet = part, s.name
 	for {
 		t, err := p.next()
 		if err != nil {

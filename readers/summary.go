@@ -92,6 +92,8 @@ type figures struct {
 	all   []running // one per number column, over the table so far
 	block []running // since the last summary
 	next  int       // first row that is not in the sums yet
+	// The last summary and the column of its word.
+	last, lastColumn int
 }
 
 type running struct {
@@ -112,7 +114,7 @@ func (r *running) add(v float64) {
 }
 
 func newFigures(b *body) *figures {
-	return &figures{b: b, all: make([]running, len(b.numeric)), block: make([]running, len(b.numeric)), next: b.first}
+	return &figures{b: b, all: make([]running, len(b.numeric)), block: make([]running, len(b.numeric)), next: b.first, last: -2}
 }
 
 // catchUp sums the rows above r that are kept.
@@ -131,76 +133,135 @@ func (f *figures) catchUp(r int) {
 }
 
 // summary tells whether a row is a sum, a mean or the like of the rows above, and
-// which. It must say so by a word in a label column or agree in its numbers; a word
-// alone counts where a label that every row has is missing, or at the end.
+// which. It must say so by a word in a label column and agree in its numbers, or
+// lack a label that every row has, or stand at the end; or its numbers alone must
+// agree beyond accident. A group may be called total, max or N, so a word is not
+// enough.
 func (f *figures) summary(r int, m uint8, last bool) string {
-	word := f.b.rowWord(r, m)
+	b := f.b
+	column, word := b.rowWord(r, m)
 	if word == "" {
 		word = f.byArithmetic(r, m)
-	} else if m&rowUnnamed == 0 && !f.agrees(r, word) && !(last && f.b.onceInColumn(r)) {
+	} else if !f.isMeant(r, column, word, m&rowUnnamed != 0, last) {
 		word = ""
 	}
 	if word != "" {
 		f.startBlock(r)
+		f.last, f.lastColumn = r, column
 	}
 	return word
 }
 
-// rowWord gives the word for a sum or mean in a record. A single letter, such as n,
-// is one only where another label is missing: it may be the name of a group.
-func (b *body) rowWord(r int, m uint8) string {
-	if m&rowWord == 0 {
-		return ""
+// isMeant tells whether a word in a label column is meant as that, and is no name
+// of a group.
+func (f *figures) isMeant(r, column int, word string, unnamed, last bool) bool {
+	b := f.b
+	first := column == b.labels[0]
+	a := f.agreement(r, word)
+	level := unnamed && b.isLevel(column, r)
+	if a.ok && (unnamed && !level || first && (a.cells > 1 || a.chance < 0.05) || a.chance < rare) {
+		return true
 	}
-	for _, c := range b.layout.columns {
+	s := b.g.seek(column)
+	switch text := s.words.text(s.word(r)); {
+	case len(text) == 1, word == "extreme" && len(text) == 3:
+		return false // n, max and min say so by their numbers or not at all
+	case unnamed && !level:
+		return true
+	case last && b.closesTable(column, r):
+		return true
+	}
+	// The deviations under the means, and the like.
+	return first && f.last == r-1 && f.lastColumn == column && !b.g.isGap(r)
+}
+
+// closesTable tells whether the word for a sum stands nowhere else in the first
+// column of labels, and is long enough to be no label by accident: sd may follow sc.
+func (b *body) closesTable(column, r int) bool {
+	s := b.g.seek(column)
+	text := s.words.text(s.word(r))
+	return column == b.labels[0] && (len(text) > 3 || equalFold(text, "sum")) && b.wordCount(column, s.word(r)) == 1
+}
+
+// isLevel tells whether the word for a sum stands in two or more rows that have all
+// their labels: then it is a group's name, such as max among levels of a dose.
+func (b *body) isLevel(column, r int) bool {
+	s := b.g.seek(column)
+	word, n := s.word(r), 0
+	key := [2]int{column, int(word)}
+	if known, ok := b.levels[key]; ok {
+		return known
+	}
+	for k := b.first; k < b.end && n < 2; k++ {
+		if s.kind(k)&markWord != 0 && s.word(k) == word && b.marks[k]&rowUnnamed == 0 {
+			n++
+		}
+	}
+	if b.levels == nil {
+		b.levels = map[[2]int]bool{}
+	}
+	b.levels[key] = n == 2
+	return n == 2
+}
+
+// rowWord gives the word for a sum or mean in a record, and its column. A single
+// letter, such as n, is one only where another label is missing: it may be the name
+// of a group.
+func (b *body) rowWord(r int, m uint8) (column int, word string) {
+	if m&rowWord == 0 {
+		return -1, ""
+	}
+	for _, c := range b.labels {
 		s := b.g.seek(c)
 		if k := s.kind(r); class(k) != asWord || k&markWord == 0 {
 			continue
 		}
 		text := s.words.text(s.word(r))
 		if w := summaryName(text); w != "" && (len(text) > 1 || m&rowUnnamed != 0) {
-			return w
+			return c, w
 		}
 	}
-	return ""
+	return -1, ""
 }
 
-// agrees tells whether the numbers of a row are what its word says of the rows
-// above.
-func (f *figures) agrees(r int, word string) bool {
+// rare is the chance below which no accident is believed: two figures of two blocks
+// are compared, and one row in a thousand may be taken wrongly.
+const rare = 1e-3 / 4
+
+// agreement is how the numbers of a row compare with a figure of the rows above.
+type agreement struct {
+	ok     bool
+	cells  int
+	chance float64 // that they would agree by accident
+}
+
+// agreement compares a row with the rows since the last summary, then with all.
+func (f *figures) agreement(r int, word string) agreement {
 	f.catchUp(r)
-	for _, over := range [...][]running{f.block, f.all} {
-		if _, ok := f.compare(r, word, over); ok {
-			return true
-		}
+	if a := f.compare(r, word, f.block); a.ok {
+		return a
 	}
-	return false
+	return f.compare(r, word, f.all)
 }
 
-// byArithmetic tells whether a row without a word has the sums or the means of the
-// rows above. Only a row that lacks a label, or stands at the end, is asked, and
-// its numbers must agree so closely that it would happen by accident once in a
-// thousand rows at most.
+// byArithmetic tells whether a row without a word has the means or the sums of the
+// rows above. Only a row that lacks a label, or stands at the end, is asked.
 func (f *figures) byArithmetic(r int, m uint8) string {
 	if m&rowUnnamed == 0 && !f.b.endsTable(r) {
 		return ""
 	}
-	f.catchUp(r)
-	for _, over := range [...][]running{f.block, f.all} {
-		for _, name := range [...]string{"mean", "sum"} {
-			if chance, ok := f.compare(r, name, over); ok && 4*chance < 1e-3 {
-				return name + " of the rows above"
-			}
+	for _, word := range [...]string{"mean", "sum"} {
+		if a := f.agreement(r, word); a.ok && a.chance < rare {
+			return word + " of the rows above"
 		}
 	}
 	return ""
 }
 
 // compare holds the numbers of a row against a figure of the rows above, within
-// half a unit of their last decimal. ok is true when all agree; chance is how often
-// they would by accident.
-func (f *figures) compare(r int, name string, over []running) (chance float64, ok bool) {
-	chance = 1
+// half a unit of their last decimal.
+func (f *figures) compare(r int, word string, over []running) agreement {
+	a := agreement{chance: 1}
 	for i, c := range f.b.numeric {
 		s := f.b.g.seek(c)
 		kind := s.kind(r)
@@ -208,10 +269,13 @@ func (f *figures) compare(r int, name string, over []running) (chance float64, o
 			continue
 		}
 		if CellKind(kind&kindMask) != Number || over[i].n < 2 {
-			return 1, false
+			return agreement{}
 		}
-		want, spread := 0.0, over[i].high-over[i].low
-		switch name {
+		v := s.value(r)
+		unit := math.Pow(10, -float64(max(0, decimalsOf(v, s.form(r), kind))))
+		spread := over[i].high - over[i].low
+		var want float64
+		switch word {
 		case "mean":
 			want = over[i].sum / float64(over[i].n)
 		case "sum":
@@ -219,18 +283,37 @@ func (f *figures) compare(r int, name string, over []running) (chance float64, o
 			spread = math.Max(spread, math.Abs(want))
 		case "count":
 			want = float64(over[i].n)
+		case "extreme":
+			want = over[i].low
+			if math.Abs(v-over[i].high) < math.Abs(v-want) {
+				want = over[i].high
+			}
 		default:
-			return 1, false
+			return agreement{}
 		}
-		v := s.value(r)
-		unit := math.Pow(10, -float64(max(0, decimalsOf(v, s.form(r), kind))))
 		if math.Abs(v-want) > unit/2+1e-9*math.Abs(want) {
-			return 1, false
+			return agreement{}
 		}
-		ok = true
-		chance *= math.Min(1, unit/math.Max(spread, unit))
+		a.ok = true
+		a.cells++
+		// A value that other rows have too, such as a level that was set, proves nothing.
+		if !f.b.occursElsewhere(c, r) {
+			a.chance *= math.Min(1, unit/math.Max(spread, unit))
+		}
 	}
-	return chance, ok
+	return a
+}
+
+// occursElsewhere tells whether another record has the same number in a column.
+func (b *body) occursElsewhere(c, r int) bool {
+	s := b.g.seek(c)
+	v := s.value(r)
+	for k := b.first; k < b.end; k++ {
+		if k != r && CellKind(s.kind(k)&kindMask) == Number && s.value(k) == v {
+			return true
+		}
+	}
+	return false
 }
 
 // endsTable tells whether a row is the last of the file or stands before a gap.
@@ -242,22 +325,6 @@ func (b *body) endsTable(r int) bool {
 		return b.g.isGap(k)
 	}
 	return true
-}
-
-// onceInColumn tells whether the summary's word stands nowhere else in its column,
-// so that it is no group's name.
-func (b *body) onceInColumn(r int) bool {
-	for _, c := range b.labels {
-		s := b.g.seek(c)
-		if k := s.kind(r); class(k) != asWord || k&markWord == 0 {
-			continue
-		}
-		text := s.words.text(s.word(r))
-		if summaryName(text) != "" {
-			return len(text) > 2 && b.wordCount(c, s.word(r)) == 1
-		}
-	}
-	return false
 }
 
 // startBlock begins a new block of rows after a summary.

@@ -207,9 +207,8 @@ func (c *Column) Cell(row int) Cell {
 			cell.Text = numberText(cell.Number, form, g.decimal)
 		}
 		cell.Decimals = decimalsOf(cell.Number, form, stored)
-		if c.table.Format == TextFile && form&decimalsMask == decimalsOpen && stored&markWord == 0 {
-			_, fraction, _ := strings.Cut(cell.Text, string(g.decimal))
-			cell.Decimals = len(fraction)
+		if c.table.Format == TextFile && form&decimalsMask == decimalsOpen {
+			cell.Decimals = decimalsIn(cell.Text, g.decimal)
 		}
 		if form&formUnit != 0 {
 			cell.Unit = c.Unit
@@ -256,6 +255,20 @@ func decimalsOf(v float64, form, stored uint8) int {
 		n = 0
 	}
 	return max(0, n-exponent)
+}
+
+// decimalsIn counts the digits after the decimal sign in the text of a number that
+// has more of them than the form can hold; -1 with an exponent.
+func decimalsIn(text string, decimal byte) int {
+	_, fraction, _ := strings.Cut(text, string(decimal))
+	n := 0
+	for n < len(fraction) && fraction[n] >= '0' && fraction[n] <= '9' {
+		n++
+	}
+	if n < len(fraction) && fraction[n]|0x20 == 'e' || fraction == "" && strings.ContainsAny(text, "eE") {
+		return -1
+	}
+	return n
 }
 
 func boolText(v float64) string {

@@ -24,7 +24,7 @@ var Linearity = &Rule{
 		"the lack-of-fit F against pure error (Fisher 1922, J. R. Stat. Soc. 85:597); F of a square in each group and RESET (Ramsey 1969, J. R. Stat. Soc. B 31:350) are told beside them",
 	Limit:    jointLimit,
 	Needs:    NeedsScatter,
-	Remedies: []*remedy.Remedy{remedy.Curve, remedy.LogResponse, remedy.SubjectErrors},
+	Remedies: []*remedy.Remedy{remedy.Curve, remedy.LogResponse, remedy.LevelErrors},
 	Chance:   linearityChance,
 	Run:      linearity,
 }
@@ -189,7 +189,7 @@ func (p *Pass) scoreMember(columns []column) Member {
 // dropped.
 func largestAlong(columns [][]float64, e []float64) (at int, along float64) {
 	for k, q := range columns {
-		if v := math.Abs(floats.Dot(q, e)); v > along {
+		if v := math.Abs(floats.Dot(q, e)); v > along*(1+1e-9) { // at a tie the first, whatever rounding says
 			at, along = k, v
 		}
 	}
@@ -428,6 +428,7 @@ func linearity(p *Pass) (Outcome, error) {
 		o.Message = response + " bends away from a straight line over " + predictor + " (" + p.strongest() + ")" + p.bendWords()
 		if p.Joint.Strong == 1 {
 			o.Message += "; or the readings of one level share an error: if so, name the level with --subject"
+			o.Target.Subjects, _ = p.levels()
 		}
 	}
 	return o, nil

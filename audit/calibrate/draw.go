@@ -39,9 +39,19 @@ func (d *drawer) observed() []float64 {
 	s.Changed()
 	row := make([]float64, d.family.members())
 	for m, statistic := range d.statistics() {
-		row[m] = statistic(s)
+		row[m] = orNothing(statistic(s))
 	}
 	return row
+}
+
+// orNothing takes a statistic that is not defined, as where all residuals have
+// one size, for one that shows nothing: statistics are large when something is
+// wrong, and none is below 0.
+func orNothing(statistic float64) float64 {
+	if math.IsNaN(statistic) {
+		return 0
+	}
+	return statistic
 }
 
 // statistics makes the members' functions for one goroutine.
@@ -76,7 +86,7 @@ func (d *drawer) draw(stream string, tables int, newErrors func() func(*rand.Ran
 	}
 	d.each(stream, tables, newErrors, func(w *worker, r int) {
 		for m, statistic := range w.statistics {
-			rows[r][m] = statistic(w.sample)
+			rows[r][m] = orNothing(statistic(w.sample))
 		}
 	})
 	return rows
@@ -105,6 +115,26 @@ func (d *drawer) each(stream string, tables int, newErrors func() func(*rand.Ran
 	}
 	close(blocks)
 	workers.Wait()
+}
+
+// Sound draws the residuals of sound tables of a pass's design from the named
+// stream and hands them to each, one table after the other. The sample is
+// overwritten by the next.
+func Sound(p *rules.Pass, stream string, tables int, each func(*rules.Sample)) {
+	d := newDrawer(p, &family{first: []int{0}}, "")
+	var random *rand.Rand
+	w := d.newWorker(func(random *rand.Rand, z []float64) {
+		for i := range z {
+			z[i] = random.NormFloat64()
+		}
+	})
+	for r := range tables {
+		if r%block == 0 {
+			random = numeric.BlockStream(p.Settings.Seed, stream, r/block)
+		}
+		w.table(random)
+		each(w.sample)
+	}
 }
 
 // worker draws one table after the other with memory of its own.

@@ -12,15 +12,20 @@ import (
 )
 
 func newExplain() *cobra.Command {
-	return &cobra.Command{
+	var schema string
+	cmd := &cobra.Command{
 		Use:   "explain [RULE]",
 		Short: "What a rule asks, how, from which source, and what to do about a breach",
-		Long:  "explain lists the rules; explain RULE tells all about one.",
-		Args:  cobra.MaximumNArgs(1),
+		Long: "explain lists the rules; explain RULE tells all about one. explain --schema audit prints\n" +
+			"the JSON Schema of what footing audit --format json writes.",
+		Args: cobra.MaximumNArgs(1),
 		ValidArgsFunction: func(*cobra.Command, []string, string) ([]string, cobra.ShellCompDirective) {
 			return rules.Names(), cobra.ShellCompDirectiveNoFileComp
 		},
 		RunE: func(cmd *cobra.Command, args []string) error {
+			if cmd.Flags().Changed("schema") {
+				return printSchema(cmd, schema, args)
+			}
 			if len(args) == 0 {
 				return report.RuleList(cmd.OutOrStdout(), rules.All)
 			}
@@ -31,6 +36,19 @@ func newExplain() *cobra.Command {
 			return report.Rule(cmd.OutOrStdout(), r)
 		},
 	}
+	cmd.Flags().StringVar(&schema, "schema", "", "print the JSON Schema of a form of output: audit")
+	return cmd
+}
+
+// printSchema prints the named schema; it takes no rule beside it.
+func printSchema(cmd *cobra.Command, name string, args []string) error {
+	if len(args) > 0 {
+		return fmt.Errorf("a rule and --schema are given; ask for one of them")
+	}
+	if name != "audit" {
+		return fmt.Errorf("--schema is %q; it can be audit", name)
+	}
+	return report.AuditSchema(cmd.OutOrStdout())
 }
 
 // noSuchRule names the rules that were perhaps meant.

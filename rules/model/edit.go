@@ -7,21 +7,90 @@ import (
 )
 
 // Without returns the design without the given used rows, which are set aside
-// for the reason; the receiver is not changed.
+// for the reason; what earlier edits did to the other rows stays. The receiver,
+// whose rows must not have been transformed, is not changed.
 func (d *Design) Without(rows []int, reason string) *Design {
+	if d.transform != nil {
+		panic("model.Without: the rows are transformed")
+	}
 	out := *d
-	out.Rows = nil
 	out.SetAside = slices.Clone(d.SetAside)
+	var keep []int
+	leave := make([]bool, len(d.Rows))
+	for _, k := range rows {
+		leave[k] = true
+	}
 	for k, i := range d.Rows {
-		if slices.Contains(rows, k) {
+		if leave[k] {
 			out.SetAside = append(out.SetAside, SetAside{Row: i, Reason: reason})
 			continue
 		}
-		out.Rows = append(out.Rows, i)
+		keep = append(keep, k)
 	}
 	slices.SortStableFunc(out.SetAside, func(a, b SetAside) int { return a.Row - b.Row })
-	out.fill()
+	out.keep(keep)
 	return &out
+}
+
+// keep picks the given used rows out of everything that runs over them. Labels
+// that no row bears any more are gone.
+func (d *Design) keep(rows []int) {
+	d.Rows = picked(d.Rows, rows)
+	d.Y = picked(d.Y, rows)
+	d.Order = picked(d.Order, rows)
+	d.Group, d.Groups = recoded(picked(d.Group, rows), d.Groups)
+	d.Subject, d.Subjects = recoded(picked(d.Subject, rows), d.Subjects)
+	d.Predictors = slices.Clone(d.Predictors)
+	for k, v := range d.Predictors {
+		d.Predictors[k] = picked(v, rows)
+	}
+	d.Covariates = slices.Clone(d.Covariates)
+	for k, c := range d.Covariates {
+		c.Number = picked(c.Number, rows)
+		c.Code, c.Levels = recoded(picked(c.Code, rows), c.Levels)
+		d.Covariates[k] = c
+	}
+	d.Added = slices.Clone(d.Added)
+	for k, t := range d.Added {
+		t.Values = picked(t.Values, rows)
+		d.Added[k] = t
+	}
+}
+
+// picked gives the values at the given positions; nil of nil.
+func picked[V any](v []V, at []int) []V {
+	if v == nil {
+		return nil
+	}
+	out := make([]V, len(at))
+	for k, i := range at {
+		out[k] = v[i]
+	}
+	return out
+}
+
+// recoded numbers the labels anew that some code still names; -1 stays.
+func recoded(code []int, labels []string) ([]int, []string) {
+	named := make([]bool, len(labels))
+	for _, c := range code {
+		if c >= 0 {
+			named[c] = true
+		}
+	}
+	var left []string
+	to := make([]int, len(labels))
+	for c, label := range labels {
+		if named[c] {
+			to[c] = len(left)
+			left = append(left, label)
+		}
+	}
+	for i, c := range code {
+		if c >= 0 {
+			code[i] = to[c]
+		}
+	}
+	return code, left
 }
 
 // Relabelled returns the design with group labels replaced as the map says;
@@ -49,15 +118,33 @@ func (d *Design) Relabelled(to map[string]string) *Design {
 	return &out
 }
 
-// RowsAt lists the used rows that stand at the given rows of the table.
+// RowsAt lists the used rows that stand at the given rows of the table, upwards
+// and each once.
 func (d *Design) RowsAt(table []int) []int {
 	var rows []int
-	for k, i := range d.Rows {
-		if slices.Contains(table, i) {
+	for _, i := range table {
+		if k, used := slices.BinarySearch(d.Rows, i); used {
 			rows = append(rows, k)
 		}
 	}
-	return rows
+	slices.Sort(rows)
+	return slices.Compact(rows)
+}
+
+// Change is another number for one cell.
+type Change struct {
+	Row    int // index in the table
+	Column *readers.Column
+	Value  float64
+}
+
+// Changed returns the design with other numbers in some cells; cells that are
+// not in use are passed over. The receiver and the table are not changed.
+func (d *Design) Changed(changes []Change) *Design {
+	out := *d
+	out.changes = append(slices.Clone(d.changes), changes...)
+	out.fill()
+	return &out
 }
 
 // Place is the address of a used row's cell in a column.

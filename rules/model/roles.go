@@ -5,6 +5,7 @@ package model
 
 import (
 	"fmt"
+	"slices"
 
 	"footing/readers"
 )
@@ -54,11 +55,11 @@ func (c Columns) Fitted() []*readers.Column {
 	return append(all, c.Covariates...)
 }
 
-// Used lists every column that has a role.
+// Used lists every column that has a role, once.
 func (c Columns) Used() []*readers.Column {
 	all := c.Fitted()
 	for _, col := range []*readers.Column{c.Subject, c.Order, c.Label} {
-		if col != nil {
+		if col != nil && !slices.Contains(all, col) {
 			all = append(all, col)
 		}
 	}
@@ -77,8 +78,6 @@ func (c Columns) RoleOf(col *readers.Column) string {
 		return "group"
 	case col == c.Subject:
 		return "subject"
-	case col == c.Order:
-		return "order"
 	case col == c.Label:
 		return "label"
 	}
@@ -92,13 +91,17 @@ func (c Columns) RoleOf(col *readers.Column) string {
 			return "covariate"
 		}
 	}
+	if col == c.Order {
+		return "order"
+	}
 	return ""
 }
 
 // Resolve finds the columns of the roles. It refuses a name that no column or
-// two columns bear, one column in two roles, a column of another kind in the
-// part of a number, and roles that make no model. Every error is one sentence
-// with the position where there is one.
+// two columns bear, one column in two roles (but the order may be a predictor or
+// a covariate too), a column of another kind in the part of a number, and roles
+// that make no model. Every error is one sentence with the position where there
+// is one.
 func Resolve(t *readers.Table, r Roles) (Columns, error) {
 	var c Columns
 	taken := map[*readers.Column]string{}
@@ -110,7 +113,9 @@ func Resolve(t *readers.Table, r Roles) (Columns, error) {
 		if err != nil {
 			return nil, err
 		}
-		if other, twice := taken[col]; twice && other == role {
+		if other, twice := taken[col]; twice && role == "order" && (other == "predictor" || other == "covariate") {
+			return col, mustBeNumbers(t, col, role) // rows taken along the predictor, or a drift that is allowed for
+		} else if twice && other == role {
 			return nil, refuse(t, "column %q is given twice as %s; name it once", col.Title(), role)
 		} else if twice {
 			return nil, refuse(t, "column %q is given both as %s and as %s; give each column one role", col.Title(), other, role)
@@ -134,7 +139,6 @@ func Resolve(t *readers.Table, r Roles) (Columns, error) {
 		{"response", r.Response, true, &c.Response},
 		{"group", r.Group, false, &c.Group},
 		{"subject", r.Subject, false, &c.Subject},
-		{"order", r.Order, true, &c.Order},
 		{"label", r.Label, false, &c.Label},
 	}
 	for i, s := range single {
@@ -158,6 +162,9 @@ func Resolve(t *readers.Table, r Roles) (Columns, error) {
 			return Columns{}, err
 		}
 		c.Covariates = append(c.Covariates, col)
+	}
+	if c.Order, err = find("order", r.Order, true); err != nil {
+		return Columns{}, err
 	}
 	return c, makesModel(t, c)
 }

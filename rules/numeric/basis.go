@@ -96,7 +96,7 @@ func (b *Basis) reflect(work [][]float64) (scale []float64) {
 	b.r = make([][]float64, 0, p)
 	left := make([]float64, p) // what is left of each column below row k
 	for j := range work {
-		left[j] = floats.Norm(work[j], 2)
+		left[j] = math.Sqrt(floats.Dot(work[j], work[j]))
 	}
 	for k := 0; k < min(p, b.n); k++ {
 		best := k
@@ -125,7 +125,7 @@ func (b *Basis) reflect(work [][]float64) (scale []float64) {
 			a := work[j][k:]
 			floats.AddScaled(a, -c*floats.Dot(v, a), v)
 			row[j] = a[0]
-			left[j] = floats.Norm(a[1:], 2)
+			left[j] = math.Sqrt(floats.Dot(a[1:], a[1:]))
 		}
 		b.r = append(b.r, row)
 		scale = append(scale, c)

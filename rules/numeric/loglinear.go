@@ -71,20 +71,18 @@ func (f *logVarianceFit) minimize() {
 			return
 		}
 		longest := floats.Norm(step, math.Inf(1))
-		size := min(1, 3/longest) // No further than a factor of twenty at once.
-		better := false
-		for ; size > 1e-12; size /= 2 {
+		// No further than a factor of twenty at once. Near the end the sum no
+		// longer shows what a step does, but there Newton's are right.
+		size := min(1, 3/longest)
+		floats.AddScaledTo(trial, f.log, size, step)
+		next := f.value(trial)
+		for longest > 1e-4 && next > value && size > 1e-9 {
+			size /= 2
 			floats.AddScaledTo(trial, f.log, size, step)
-			if v := f.value(trial); v <= value {
-				value, better = v, true
-				break
-			}
+			next = f.value(trial)
 		}
-		if !better {
-			return
-		}
-		f.log, trial = trial, f.log
-		if size*longest < 1e-12 {
+		f.log, trial, value = trial, f.log, next
+		if longest < 1e-12 {
 			return
 		}
 	}

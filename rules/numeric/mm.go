@@ -250,10 +250,14 @@ func (m *mmSearch) scaleOf(line mmLine) float64 {
 		}
 		next := s * math.Exp((breakdown-mean)/slope)
 		if !(next > low && next < high) {
-			next = s * math.Sqrt(mean/breakdown) // The fixed-point step, which stays on its side.
-		}
-		if !(next > low && next < high) {
-			next = (low + min(high, 2*s)) / 2
+			switch {
+			case low == 0:
+				next = s / 2
+			case math.IsInf(high, 1):
+				next = 2 * s
+			default:
+				next = low + (high-low)/2
+			}
 		}
 		if math.Abs(next-s) <= 1e-15*s {
 			return next

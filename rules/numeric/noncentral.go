@@ -88,7 +88,7 @@ func crossing(f func(float64) float64, low, high float64) float64 {
 		case v == 0:
 			return x
 		case v < 0:
-			if math.Abs(x-low) <= 1e-14*math.Abs(x) {
+			if math.Abs(x-low) <= 1e-13*math.Abs(x) {
 				return x
 			}
 			low, below = x, v
@@ -97,7 +97,7 @@ func crossing(f func(float64) float64, low, high float64) float64 {
 			}
 			side = -1
 		default:
-			if math.Abs(high-x) <= 1e-14*math.Abs(x) {
+			if math.Abs(high-x) <= 1e-13*math.Abs(x) {
 				return x
 			}
 			high, above = x, v
@@ -106,7 +106,7 @@ func crossing(f func(float64) float64, low, high float64) float64 {
 			}
 			side = 1
 		}
-		if high-low <= 1e-14*math.Abs(high) {
+		if high-low <= 1e-13*math.Abs(high) {
 			break
 		}
 	}

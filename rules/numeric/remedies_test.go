@@ -414,15 +414,16 @@ func TestLogLinearVarianceAgainstReference(t *testing.T) {
 			root[i] = math.Sqrt(s)
 		}
 		low, high := slices.Min(variance), slices.Max(variance)
-		near(t, "spread ratio", math.Sqrt(high/low), v.Ratio, 1e-8)
-		near(t, "largest", math.Log(high), v.Largest, 1e-8)
-		near(t, "least", math.Log(low), v.Least, 1e-8)
+		// The reference minimizes a sum, which is flat to 1e-16 over some 1e-8.
+		near(t, "spread ratio", math.Sqrt(high/low), v.Ratio, 1e-7)
+		near(t, "largest", math.Log(high), v.Largest, 1e-7)
+		near(t, "least", math.Log(low), v.Least, 1e-7)
 		near(t, "sum of logarithms", sum, v.SumLogV, 1e-9)
 		for _, column := range append(m.columns, m.y) {
 			floats.Div(column, root)
 		}
 		_, weighted := m.fit()
-		near(t, "weighted RSS", floats.Dot(weighted, weighted), v.RSS, 1e-8)
+		near(t, "weighted RSS", floats.Dot(weighted, weighted), v.RSS, 1e-7)
 	})
 }
 

@@ -18,10 +18,10 @@ func averageOverSpread(df float64, k, slope func(s float64) float64) float64 {
 	logTerm := func(u float64) float64 { return logDensity(u) + math.Log(k(math.Exp(u))) }
 	constant := math.Log(2) + 0.5*math.Log(df/(4*math.Pi)) - stirlingError(df/2)
 
-	// What lies 45 below the peak in the logarithm is below rounding.
-	const negligible = 45
+	// What lies 42 below the peak in the logarithm is below rounding.
+	const negligible = 42
 	peak, height := 0.0, math.Inf(-1)
-	scan := 0.5 / math.Sqrt(2*df)
+	scan := 1 / math.Sqrt(2*df)
 	for _, direction := range []float64{-scan, scan} {
 		for u := 0.0; logDensity(u) > max(height-negligible, -745); u += direction {
 			if v := logTerm(u); v > height {

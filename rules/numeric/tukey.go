@@ -38,14 +38,12 @@ func TukeyQuantile(p float64, groups int, df float64) float64 {
 	lack := func(u float64) float64 {
 		return math.Log(1-p) - math.Log(tail.studentized(math.Exp(u), df))
 	}
-	low, high := 0.0, 2.0
-	for lack(low) > 0 {
-		low -= 2
-	}
-	for lack(high) < 0 {
-		low, high = high, high+2
-	}
-	return math.Exp(crossing(lack, low, high))
+	// One pair alone exceeds less often than the range, all pairs counted singly
+	// more often.
+	k := float64(groups)
+	low := -math.Sqrt2 * StudentQuantile((1-p)/2, df)
+	high := -math.Sqrt2 * StudentQuantile((1-p)/(k*(k-1)), df)
+	return math.Exp(crossing(lack, math.Log(low)-1e-9, math.Log(high)+1e-9))
 }
 
 // rangeTail holds, on a grid of z, what the range of some number of standard

@@ -65,10 +65,11 @@ type Start struct {
 type Target struct {
 	Rows   []int             // used rows, as indices of the design
 	Labels map[string]string // group labels to be replaced
+	Values []model.Change    // numbers to be put in place of those of the table
 
 	Reliability map[string]float64 // of the predictor, by group
 	LeaveOut    int                // position of a further predictor or covariate
-	Subjects    []int              // of each used row, where they are not those of the design
+	Subjects    []int              // of each used row: the levels of replicated predictor values
 }
 
 // NotApplicable says why a remedy cannot be tried on these rows.

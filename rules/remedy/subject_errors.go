@@ -15,35 +15,51 @@ var SubjectErrors = &Remedy{
 	Short:  "counting subjects and not rows",
 	Source: "CR2; Bell and McCaffrey 2002, Survey Methodology 28:169",
 	Answer: func(s Start) (model.Answers, error) {
-		named := s.Target.Subjects
-		if named == nil {
-			named = s.Design.Subject
-		}
-		if named == nil {
+		if s.Design.Subject == nil {
 			return model.Answers{}, &NotApplicable{Reason: "no subject is given"}
 		}
-		subjects, count := alone(named)
-		a := s.Fit.Answers(s.Confidence)
-		terms := s.Fit.AnswerTerms()
-		for g := range a.Slopes {
-			e := &a.Slopes[g]
-			if !e.Exists {
-				continue
-			}
-			if len(a.Slopes) > 1 && distinctIn(subjects, s.Design.Members(g)) < 2 {
-				return a, &NotApplicable{Reason: "a group has fewer than two subjects"}
-			}
-			v, df := numeric.CR2(s.Fit.Term(terms[g]).Catcher, s.Fit.Residual, s.Fit.Basis.Q(), subjects, count)
-			if !(v > 0) || !(df > 0) {
-				return a, &NotApplicable{Reason: "the subjects leave nothing to judge from"}
-			}
-			e.Requote(math.Sqrt(v), df, s.Confidence)
-		}
-		if a.Difference != nil {
-			comparePairs(s, a.Difference, subjects, count)
-		}
-		return a, nil
+		return bySubject(s, s.Design.Subject)
 	},
+}
+
+// LevelErrors takes the levels of replicated predictor values for subjects: the
+// readings of one level may share an error where no subject says so.
+var LevelErrors = &Remedy{
+	Name:   "subject-errors",
+	Do:     "if the readings of one level share an error, as those of one pot or one batch do, name the level with --subject and quote the intervals given here, which count levels and not rows",
+	Short:  "counting levels and not rows",
+	Source: SubjectErrors.Source,
+	Answer: func(s Start) (model.Answers, error) {
+		if s.Target.Subjects == nil {
+			return model.Answers{}, &NotApplicable{Reason: "the readings of one level were not found to share an error"}
+		}
+		return bySubject(s, s.Target.Subjects)
+	},
+}
+
+// bySubject requotes the answers with rows of one subject sharing their errors.
+func bySubject(s Start, named []int) (model.Answers, error) {
+	subjects, count := alone(named)
+	a := s.Fit.Answers(s.Confidence)
+	terms := s.Fit.AnswerTerms()
+	for g := range a.Slopes {
+		e := &a.Slopes[g]
+		if !e.Exists {
+			continue
+		}
+		if len(a.Slopes) > 1 && distinctIn(subjects, s.Design.Members(g)) < 2 {
+			return a, &NotApplicable{Reason: "a group has fewer than two subjects"}
+		}
+		v, df := numeric.CR2(s.Fit.Term(terms[g]).Catcher, s.Fit.Residual, s.Fit.Basis.Q(), subjects, count)
+		if !(v > 0) || !(df > 0) {
+			return a, &NotApplicable{Reason: "the subjects leave nothing to judge from"}
+		}
+		e.Requote(math.Sqrt(v), df, s.Confidence)
+	}
+	if a.Difference != nil {
+		comparePairs(s, a.Difference, subjects, count)
+	}
+	return a, nil
 }
 
 // comparePairs compares the slopes pair by pair; with more than two the test of
