@@ -270,6 +270,31 @@ func (s *study) rounded(*testing.T) {
 		})
 		s.atMost("15", "any joint alarm, y rounded to 1 SD", fmt.Sprintf("n %d, 2 groups", n), 7, rate[0], tables)
 	}
+	s.roundedLarge()
+}
+
+// roundedLarge is the same where p-values come from formulas, for steps at which
+// a normal shape can still be judged.
+func (s *study) roundedLarge() {
+	const n = 5000
+	base := even(n, 2, "normal").pass(1, 0)
+	tables := s.pick(400, 16)
+	for _, step := range []float64{0.1, 0.25} {
+		if !s.full && step != 0.25 {
+			continue
+		}
+		rate := shares(fmt.Sprintf("rounded/large/%v", step), tables, func(table int, random *rand.Rand) []bool {
+			r := drawn(random, n, 2, "normal")
+			place := random.Float64()
+			for i, y := range r.y {
+				r.y[i] = step * math.Round(y/step+place)
+			}
+			p := withValues(base, r.x, r.y)
+			p.Settings.Seed = uint64(table + 1)
+			return []bool{anyJoint(calibrate.Judge(rules.All, p, calibrate.Options{OnlyAlarms: true}))}
+		})
+		s.atMost("", fmt.Sprintf("any joint alarm by formulas, y rounded to %v SD", step), fmt.Sprintf("n %d, 2 groups", n), 5, rate[0], tables)
+	}
 }
 
 // exactness measures the joint rate with a null of its own for every table, at
