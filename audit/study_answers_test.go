@@ -30,7 +30,7 @@ func differs(a model.Answers) bool { return a.Difference.P <= 0.05 }
 
 // unequalScatter measures what the answers are worth where the scatter varies.
 func (s *study) unequalScatter(*testing.T) {
-	tables := s.pick(20000, 300)
+	tables := s.pick(8000, 300)
 	r := rows{}
 	for g, size := range []int{20, 40} {
 		for i := range size {
@@ -77,7 +77,7 @@ func (s *study) unequalScatter(*testing.T) {
 // order measures independence and its remedies, 50 rows and one line.
 func (s *study) order(*testing.T) {
 	const n, rho = 50, 0.4
-	tables := s.pick(20000, 1000)
+	tables := s.pick(8000, 1000)
 	var order, w, v, along []float64
 	for i := 1; i <= n; i++ {
 		order = append(order, float64(i))
