@@ -1,6 +1,7 @@
 package readers
 
 import (
+	"bytes"
 	"slices"
 	"sort"
 )
@@ -18,6 +19,7 @@ type grid struct {
 	records     int
 	lines       runs       // record -> line or row of the file
 	fields      runs       // record -> number of fields; text files only
+	lost        int        // 1 + the first record with U+FFFD in it
 	gaps        []int32    // records that follow a blank row
 	comments    []int32    // records of lines that start with #
 	signs       evidence   // of the decimal sign
@@ -80,6 +82,9 @@ func (g *grid) isComment(record int) bool {
 func (g *grid) word(s *store, record int, text []byte, form, marks uint8) {
 	code, slot, known := s.words.find(text)
 	if !known {
+		if g.lost == 0 && bytes.Contains(text, []byte("\ufffd")) {
+			g.lost = record + 1
+		}
 		kind, value := g.classify(string(text))
 		code = s.words.add(text, slot, kind)
 		if kind == Number || kind == declaredCode {

@@ -133,6 +133,7 @@ type Column struct {
 	store  *store
 	kind   Kind
 	counts [declaredCode + 1]int
+	marked Mark
 	labels func() labels
 }
 
@@ -187,7 +188,7 @@ func (c *Column) Cell(row int) Cell {
 	stored, form := s.kind(at), s.form(at)
 	kind := CellKind(stored & kindMask)
 	cell := Cell{
-		Kind: kind.public(), Number: math.NaN(), Decimals: -1,
+		Kind: kind.public(), Number: math.NaN(), Decimals: c.Decimals(row),
 		TextNumber: stored&markText != 0,
 		Formula:    stored&markResult != 0,
 		Filled:     stored&markFilled != 0,
@@ -205,10 +206,6 @@ func (c *Column) Cell(row int) Cell {
 		cell.Number = s.value(at)
 		if cell.Text == "" {
 			cell.Text = numberText(cell.Number, form, g.decimal)
-		}
-		cell.Decimals = decimalsOf(cell.Number, form, stored)
-		if c.table.Format == TextFile && form&decimalsMask == decimalsOpen {
-			cell.Decimals = decimalsIn(cell.Text, g.decimal)
 		}
 		if form&formUnit != 0 {
 			cell.Unit = c.Unit
@@ -413,8 +410,13 @@ func (c *Column) makeLabels() labels {
 func (c *Column) settle() {
 	c.counts = [declaredCode + 1]int{}
 	for row := range c.table.length {
+		at := c.table.at(row)
+		k, f := c.store.kind(at), c.store.form(at)
+		if k&^(kindMask|markWord) != 0 || f&^decimalsMask != 0 || k&kindMask == uint8(declaredCode) {
+			c.marked |= marksOf(k, f)
+		}
 		if !c.table.faulty(row) {
-			c.counts[c.store.kind(c.table.at(row))&kindMask]++
+			c.counts[k&kindMask]++
 		}
 	}
 	c.kind = kindOf(&c.counts)
