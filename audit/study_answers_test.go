@@ -120,7 +120,7 @@ func (s *study) order(*testing.T) {
 	}
 	own := func(what, where string, p *rules.Pass, target float64, newErrors func() func(*rand.Rand, []float64)) {
 		got := calibrate.Simulate(rules.All, p).Rates("study/order", tables, newErrors).Own[rules.Independence.Name]
-		s.share("11", "independence at its own 5 %, "+what, where, target, 4000, got, tables)
+		s.shareOver("11", "independence at its own 5 %, "+what, where, target, 4000, got, tables, 1, 1)
 	}
 
 	p := design(order)
@@ -247,7 +247,7 @@ func (s *study) wholeAudit(*testing.T) {
 				if n == 12 && groups == 4 && kind == "discrete" {
 					continue // three rows of a group often share one value: no slope, and no sound table
 				}
-				tables := s.pick(map[int]int{12: 1000, 20: 1000, 50: 800, 200: 400}[n], 40)
+				tables := s.pick(map[int]int{12: 400, 20: 400, 50: 300, 200: 200}[n], 20)
 				name := fmt.Sprintf("%s, n %d, %d groups", kind, n, groups)
 				rate := shares("whole/"+name, tables, func(table int, random *rand.Rand) []bool {
 					r := soundTable(random, n, groups, kind)

@@ -256,7 +256,24 @@ func ownBreach(t *testing.T, r *rules.Rule, p *rules.Pass) rules.Trouble {
 	return chance.Breach()
 }
 
-// power is how often a rule alarms jointly at errors of the given kind.
-func power(p *rules.Pass, r *rules.Rule, tables int, newErrors func() func(*rand.Rand, []float64)) float64 {
-	return calibrate.Simulate(rules.All, p).Rates("study/"+r.Name, tables, newErrors).Rule[r.Name]
+// power is how often a rule alarms jointly at errors of the given kind, the mean
+// over several nulls.
+func (s *study) power(r rows, rule *rules.Rule, tables int, errors func(p *rules.Pass) func() func(*rand.Rand, []float64)) float64 {
+	mean := 0.0
+	for seed := range s.nulls() {
+		p := r.pass(uint64(seed+1), replicates)
+		rates := calibrate.Simulate(rules.All, p).Rates("study/"+rule.Name, tables/s.nulls(), errors(p))
+		mean += rates.Rule[rule.Name] / float64(s.nulls())
+	}
+	return mean
+}
+
+// fixed gives the same errors for every pass.
+func fixed(newErrors func() func(*rand.Rand, []float64)) func(*rules.Pass) func() func(*rand.Rand, []float64) {
+	return func(*rules.Pass) func() func(*rand.Rand, []float64) { return newErrors }
+}
+
+// breachOf gives the errors of a rule's own breach in each pass.
+func breachOf(t *testing.T, r *rules.Rule) func(*rules.Pass) func() func(*rand.Rand, []float64) {
+	return func(p *rules.Pass) func() func(*rand.Rand, []float64) { return ownBreach(t, r, p).New }
 }

@@ -46,7 +46,7 @@ func (s *study) sound(*testing.T) {
 // critical measures what single rules would do each at their own 5 %, and the
 // p that holds them together.
 func (s *study) critical(*testing.T) {
-	tables := s.pick(8000, 2000)
+	tables := s.pick(16000, 2000)
 	for _, c := range []struct {
 		n           int
 		own, target float64
@@ -58,10 +58,14 @@ func (s *study) critical(*testing.T) {
 		if !s.full && c.n > 50 {
 			continue
 		}
-		null := calibrate.Simulate(rules.All, even(c.n, 2, "normal").pass(1, replicates))
-		rates := null.Rates("study/own", tables, soundErrors)
-		s.share("2", "any rule at its own 5 %, sound", designName(c.n, 2, "normal"), c.own, 8000, rates.AnyOwn, tables)
-		s.value("3", "critical p of a rule", designName(c.n, 2, "normal"), c.target, null.Critical(), 0.0012, 4)
+		own, point := 0.0, 0.0
+		for seed := range s.nulls() {
+			null := calibrate.Simulate(rules.All, even(c.n, 2, "normal").pass(uint64(seed+1), replicates))
+			own += null.Rates("study/own", tables/s.nulls(), soundErrors).AnyOwn / float64(s.nulls())
+			point += null.Critical() / float64(s.nulls())
+		}
+		s.powerShare("2", "any rule at its own 5 %, sound", designName(c.n, 2, "normal"), c.own, 8000, own, tables)
+		s.value("3", "critical p of a rule", designName(c.n, 2, "normal"), c.target, point, 0.0012, 4)
 	}
 }
 
@@ -75,14 +79,13 @@ type powerCase struct {
 
 // ownPower measures the power of a rule at the breach that the audit tells of.
 func (s *study) ownPower(t *testing.T, number string, r *rules.Rule, cases ...powerCase) {
-	tables := s.pick(8000, 2000)
+	tables := s.pick(16000, 2000)
 	for _, c := range cases {
 		if !s.full && !c.short {
 			continue
 		}
-		p := even(c.n, c.groups, c.shape).pass(1, replicates)
-		got := power(p, r, tables, ownBreach(t, r, p).New)
-		s.share(number, r.Name+", own breach", designName(c.n, c.groups, c.shape), c.target, 2000, got, tables)
+		got := s.power(even(c.n, c.groups, c.shape), r, tables, breachOf(t, r))
+		s.powerShare(number, r.Name+", own breach", designName(c.n, c.groups, c.shape), c.target, 2000, got, tables)
 	}
 }
 
@@ -90,7 +93,7 @@ func (s *study) linearity(t *testing.T) {
 	s.ownPower(t, "4", rules.Linearity,
 		powerCase{20, 2, "normal", 19, false}, powerCase{50, 2, "normal", 69, true}, powerCase{60, 2, "normal", 81, false},
 		powerCase{50, 1, "normal", 76, false}, powerCase{50, 2, "lognormal", 71, false})
-	tables := s.pick(8000, 2000)
+	tables := s.pick(16000, 2000)
 	square := func(v float64) float64 { return v * v }
 	wave := func(v float64) float64 { return math.Sin(2 * math.Pi * v) }
 	for _, c := range []struct {
@@ -116,8 +119,8 @@ func (s *study) linearity(t *testing.T) {
 				shift[members[k]] = 0.5 * v
 			}
 		}
-		got := power(r.pass(1, replicates), rules.Linearity, tables, shifted(shift))
-		s.share("5", c.what, designName(c.n, c.groups, "normal"), c.target, 2000, got, tables)
+		got := s.power(r, rules.Linearity, tables, fixed(shifted(shift)))
+		s.powerShare("5", c.what, designName(c.n, c.groups, "normal"), c.target, 2000, got, tables)
 	}
 }
 
@@ -141,7 +144,7 @@ func (s *study) constantVariance(t *testing.T) {
 	}
 	s.ownPower(t, "7", rules.ConstantVariance,
 		powerCase{50, 2, "normal", 47, true}, powerCase{50, 2, "uniform", 82, true}, powerCase{50, 2, "lognormal", 11, false})
-	tables := s.pick(8000, 2000)
+	tables := s.pick(16000, 2000)
 	r := even(50, 2, "normal")
 	sd := make([]float64, r.n())
 	for g, members := range r.members() {
@@ -149,8 +152,8 @@ func (s *study) constantVariance(t *testing.T) {
 			sd[i] = float64(2 - g)
 		}
 	}
-	got := power(r.pass(1, replicates), rules.ConstantVariance, tables, scaled(sd))
-	s.share("7", "constant-variance, SD doubled in a group", designName(50, 2, "normal"), 48, 2000, got, tables)
+	got := s.power(r, rules.ConstantVariance, tables, fixed(scaled(sd)))
+	s.powerShare("7", "constant-variance, SD doubled in a group", designName(50, 2, "normal"), 48, 2000, got, tables)
 }
 
 // spreadOf gives the largest over the smallest SD of errors that are normal
@@ -214,7 +217,7 @@ func anyJoint(joint map[string]*rules.Joint) bool {
 
 // levels measures linearity where predictor values are replicated.
 func (s *study) levels(t *testing.T) {
-	tables := s.pick(8000, 2000)
+	tables := s.pick(16000, 2000)
 	for _, c := range []struct {
 		each       int
 		bend, step float64
@@ -229,10 +232,9 @@ func (s *study) levels(t *testing.T) {
 			r.y = append(r.y, random.NormFloat64())
 		}
 		design := fmt.Sprintf("x 1 to 6, %d each", c.each)
-		p := r.pass(1, replicates)
-		got := power(p, rules.Linearity, tables, ownBreach(t, rules.Linearity, p).New)
-		s.share("14", "linearity, own breach", design, c.bend, 4000, got, tables)
-		got = power(p, rules.Linearity, tables, func() func(*rand.Rand, []float64) {
+		got := s.power(r, rules.Linearity, tables, breachOf(t, rules.Linearity))
+		s.powerShare("14", "linearity, own breach", design, c.bend, 4000, got, tables)
+		got = s.power(r, rules.Linearity, tables, fixed(func() func(*rand.Rand, []float64) {
 			return func(random *rand.Rand, z []float64) {
 				off := random.IntN(6)
 				for i := range z {
@@ -242,8 +244,8 @@ func (s *study) levels(t *testing.T) {
 					}
 				}
 			}
-		})
-		s.share("14", "linearity, one level 2 SD off", design, c.step, 4000, got, tables)
+		}))
+		s.powerShare("14", "linearity, one level 2 SD off", design, c.step, 4000, got, tables)
 	}
 }
 
@@ -267,6 +269,31 @@ func (s *study) rounded(*testing.T) {
 			return []bool{anyJoint(calibrate.Judge(rules.All, p, calibrate.Options{}))}
 		})
 		s.atMost("15", "any joint alarm, y rounded to 1 SD", fmt.Sprintf("n %d, 2 groups", n), 7, rate[0], tables)
+	}
+	s.roundedLarge()
+}
+
+// roundedLarge is the same where p-values come from formulas, for steps at which
+// a normal shape can still be judged.
+func (s *study) roundedLarge() {
+	const n = 5000
+	base := even(n, 2, "normal").pass(1, 0)
+	tables := s.pick(400, 16)
+	for _, step := range []float64{0.1, 0.25} {
+		if !s.full && step != 0.25 {
+			continue
+		}
+		rate := shares(fmt.Sprintf("rounded/large/%v", step), tables, func(table int, random *rand.Rand) []bool {
+			r := drawn(random, n, 2, "normal")
+			place := random.Float64()
+			for i, y := range r.y {
+				r.y[i] = step * math.Round(y/step+place)
+			}
+			p := withValues(base, r.x, r.y)
+			p.Settings.Seed = uint64(table + 1)
+			return []bool{anyJoint(calibrate.Judge(rules.All, p, calibrate.Options{OnlyAlarms: true}))}
+		})
+		s.atMost("", fmt.Sprintf("any joint alarm by formulas, y rounded to %v SD", step), fmt.Sprintf("n %d, 2 groups", n), 5, rate[0], tables)
 	}
 }
 

@@ -55,14 +55,36 @@ func (m measured) line() string {
 
 // share adds a line for a share of tables, in percent: the target was measured
 // on targetTables and is to be met within three standard errors of the
-// difference. A target of 0 or 100 is taken for a table less, since none of a
-// few hundred is not never.
+// difference. A share of all or of none could well be three tables less or
+// more, and is given that much.
 func (s *study) share(number, what, design string, target float64, targetTables int, got float64, tables int) {
-	one := 1 / float64(targetTables)
-	p := min(max(target/100, one), 1-one)
+	s.shareOver(number, what, design, target, targetTables, got, tables, 0, 0)
+}
+
+// nullSpread is the SD between the powers that two simulated nulls of 9,999
+// tables give, over sqrt(p(1-p)): 1.0 to 1.6 points were measured at powers
+// between a third and four fifths.
+const nullSpread = 0.03
+
+// powerShare is share for a power that was read off simulated nulls: that of
+// the target off one.
+func (s *study) powerShare(number, what, design string, target float64, targetTables int, got float64, tables int) {
+	s.shareOver(number, what, design, target, targetTables, got, tables, 1, s.nulls())
+}
+
+// nulls is over how many nulls a power is averaged.
+func (s *study) nulls() int { return s.pick(8, 1) }
+
+func (s *study) shareOver(number, what, design string, target float64, targetTables int, got float64, tables, targetNulls, nulls int) {
+	few := 3 / float64(targetTables)
+	p := min(max(target/100, few), 1-few)
+	each := 1/float64(targetTables) + 1/float64(tables)
+	if nulls > 0 {
+		each += nullSpread * nullSpread * (1/float64(targetNulls) + 1/float64(nulls))
+	}
 	s.rows = append(s.rows, measured{
 		number: number, what: what, design: design, target: target, got: 100 * got,
-		tolerance: 300*math.Sqrt(p*(1-p)*(1/float64(targetTables)+1/float64(tables))) + rounding(target), digits: digitsOf(target),
+		tolerance: 300*math.Sqrt(p*(1-p)*each) + rounding(target), digits: digitsOf(target),
 	})
 }
 
@@ -175,6 +197,7 @@ func TestStudy(t *testing.T) {
 				t.Error("nothing measured")
 			}
 			for _, m := range s.rows[before:] {
+				t.Log(strings.ReplaceAll(m.line(), "\t", " | "))
 				if !m.ok() {
 					t.Errorf("%s, %s: %.2f, target %.2f within %.2f", m.what, m.design, m.got, m.target, m.tolerance)
 				}

@@ -80,29 +80,43 @@ func (p *Pass) shapiroWilk() Member {
 }
 
 func (p *Pass) andersonDarling() Member {
-	a := numeric.AndersonDarlingStatistic(p.spreadOverGrid())
-	return Member{
-		Test: Test{Name: "Anderson-Darling A", Value: a, P: numeric.AndersonDarlingP(a)},
-		New: func() func(*Sample) float64 {
+	offsets := p.gridOffsets()
+	newStatistic := func() func(*Sample) float64 {
+		if offsets == nil {
 			return func(s *Sample) float64 { return numeric.AndersonDarlingOfSorted(s.Sorted()) }
-		},
+		}
+		spread := make([]float64, len(offsets))
+		return func(s *Sample) float64 {
+			for i, e := range s.E {
+				spread[i] = e + offsets[i]
+			}
+			return numeric.AndersonDarlingStatistic(spread)
+		}
+	}
+	observed := NewSample(p.Fit)
+	copy(observed.E, p.Fit.Residual)
+	observed.Changed()
+	a := newStatistic()(observed)
+	return Member{
+		Test:    Test{Name: "Anderson-Darling A", Value: a, P: numeric.AndersonDarlingP(a)},
+		New:     newStatistic,
 		ClosedP: numeric.AndersonDarlingP,
 	}
 }
 
-// spreadOverGrid gives the residuals with a coarsely rounded response spread
-// evenly over its rounding cells, so that the rounding is not taken for a shape.
-func (p *Pass) spreadOverGrid() []float64 {
+// gridOffsets spreads a coarsely rounded response evenly over its rounding
+// cells, so that the rounding is not taken for a shape; nil when there is none.
+func (p *Pass) gridOffsets() []float64 {
 	u, ok := p.Fit.Grid()
 	if !ok {
-		return p.Fit.Residual
+		return nil
 	}
 	random := numeric.Stream(p.Settings.Seed, "grid")
-	e := make([]float64, p.Fit.N())
-	for i, r := range p.Fit.Residual {
-		e[i] = r + u*(random.Float64()-0.5)
+	offsets := make([]float64, p.Fit.N())
+	for i := range offsets {
+		offsets[i] = u * (random.Float64() - 0.5)
 	}
-	return e
+	return offsets
 }
 
 // leastSkew and leastTails are the skewness and excess kurtosis that matter:

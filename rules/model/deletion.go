@@ -17,6 +17,11 @@ type Question struct {
 	y       []float64
 	weights []float64
 	rows    []int // of the design, for each row here
+
+	// second is set for the difference of two straight lines, which are refitted
+	// by their sums: whether each row belongs to the second.
+	second []bool
+	x      []float64 // of those lines, about their means before any deletion
 }
 
 // SlopeQuestion asks for the slope of group g: on the group's own rows where
@@ -49,7 +54,17 @@ func (f *Fit) DifferenceQuestion() (Question, bool) {
 	}
 	weights := make([]float64, f.P())
 	weights[terms[0]], weights[terms[1]] = -1, 1
-	return f.question(weights), true
+	q := f.question(weights)
+	if f.QuotesOwnLines() && len(f.Design.Groups) == 2 {
+		q.second, q.x = make([]bool, f.N()), make([]float64, f.N())
+		for g := range f.Design.Groups {
+			mean := numeric.Mean(f.Design.OfGroup(f.Design.X(), g))
+			for _, i := range f.Design.Members(g) {
+				q.second[i], q.x[i] = g == 1, f.Design.X()[i]-mean
+			}
+		}
+	}
+	return q, true
 }
 
 func (f *Fit) question(weights []float64) Question {
@@ -148,6 +163,9 @@ func (g *greedy) fit() bool {
 	if g.q.IsLine() {
 		return g.fitLine()
 	}
+	if g.q.second != nil {
+		return g.fitTwoLines()
+	}
 	columns := make([][]float64, p)
 	for k, c := range g.q.columns {
 		columns[k] = make([]float64, n)
@@ -204,6 +222,60 @@ func (g *greedy) fitLine() bool {
 	return true
 }
 
+// sums are those of one of two lines.
+type sums struct{ n, x, y, xx, xy, far float64 }
+
+// fitTwoLines fits the second slope less the first: what one line's rows say of
+// it leaves the other's alone.
+func (g *greedy) fitTwoLines() bool {
+	x, y := g.q.x, g.q.y
+	var lines [2]sums
+	of := func(i int) *sums {
+		if g.q.second[i] {
+			return &lines[1]
+		}
+		return &lines[0]
+	}
+	for _, i := range g.left {
+		s := of(i)
+		s.n++
+		s.x += x[i]
+		s.y += y[i]
+	}
+	for k := range lines {
+		lines[k].x /= lines[k].n
+		lines[k].y /= lines[k].n
+	}
+	for _, i := range g.left {
+		s := of(i)
+		d := x[i] - s.x
+		s.xx += d * d
+		s.xy += d * (y[i] - s.y)
+		s.far = max(s.far, math.Abs(x[i]))
+	}
+	for _, s := range lines {
+		if !(s.xx > 1e-20*s.n*s.far*s.far) { // one value of x, but for rounding; NaN without a row
+			return false
+		}
+	}
+	slope := [2]float64{lines[0].xy / lines[0].xx, lines[1].xy / lines[1].xx}
+	g.value, g.variance, g.rss = slope[1]-slope[0], 1/lines[0].xx+1/lines[1].xx, 0
+	for _, i := range g.left {
+		k, sign := 0, -1.0
+		if g.q.second[i] {
+			k, sign = 1, 1
+		}
+		s := &lines[k]
+		d := x[i] - s.x
+		e := y[i] - s.y - slope[k]*d
+		g.catcher = append(g.catcher, sign*d/s.xx)
+		g.leverage = append(g.leverage, 1/s.n+d*d/s.xx)
+		g.residual = append(g.residual, e)
+		g.rss += e * e
+	}
+	return true
+}
+
 func (g *greedy) t() (t, df float64) {
 	df = float64(g.df)
 	return g.value / math.Sqrt(g.rss/df*g.variance), df
@@ -221,10 +293,14 @@ func (g *greedy) deleteNext(sign float64) bool {
 		if g.leverage[i] >= leverageOne {
 			continue
 		}
-		value := g.value - g.catcher[i]*e/free
+		value := sign * (g.value - g.catcher[i]*e/free)
 		rss := g.rss - e*e/free
 		variance := g.variance + g.catcher[i]*g.catcher[i]/free
-		if t := sign * value / math.Sqrt(rss/float64(g.df-1)*variance); t < least {
+		if rss < 0 { // rounding: nothing is left
+			continue
+		}
+		// t², signed, rises with t and spares a root for each row.
+		if t := value * math.Abs(value) / (rss * variance); t < least {
 			best, least = i, t
 		}
 	}
