@@ -17,7 +17,7 @@ import (
 func (e *examination) result() *Result {
 	r := &Result{Format: Format, Input: e.input(), Slopes: []Slope{}, Findings: e.orderedFindings(), Verdict: e.verdict()}
 	if e.pass.Design == nil {
-		s := Suggest(e.pass.Table, e.request.Command)
+		s := Suggest(e.pass, e.request.Command)
 		r.Suggested = &s
 		return r
 	}
@@ -148,26 +148,14 @@ func (e *examination) column(col *readers.Column) Column {
 		Name: col.Title(), Unit: columnUnit(col), Kind: col.Kind().String(), Letter: col.Letter(),
 		Role: optional(e.pass.Columns.RoleOf(col)), Min: Number(math.NaN()), Median: Number(math.NaN()), Max: Number(math.NaN()), Doubts: []string{},
 	}
-	distinct := map[string]bool{}
-	var numbers []float64
-	for i := range col.Len() {
-		switch col.Cell(i).Kind {
-		case readers.Blank, readers.Code:
-			c.Missing++
-			continue
-		}
-		c.Present++
-		if label, ok := col.Label(i); ok {
-			distinct[label] = true
-		}
-		if v, ok := col.Number(i); ok {
-			numbers = append(numbers, v)
+	c.Missing = col.Count(readers.Blank) + col.Count(readers.Code)
+	c.Present = col.Len() - c.Missing
+	if col.Kind() == readers.NumberColumn {
+		if numbers := e.pass.Profile(col).Sorted; len(numbers) > 0 {
+			c.Min, c.Median, c.Max = Number(numbers[0]), Number(numeric.Quantile(numbers, 0.5)), Number(numbers[len(numbers)-1])
 		}
 	}
-	c.Distinct = len(distinct)
-	if col.Kind() == readers.NumberColumn && len(numbers) > 0 {
-		c.Min, c.Median, c.Max = Number(slices.Min(numbers)), Number(numeric.Median(numbers)), Number(slices.Max(numbers))
-	}
+	c.Distinct = e.pass.Profile(col).Distinct
 	for _, x := range e.findings {
 		if x.rule.Family == rules.OfTable && len(x.outcome.Where) > 0 && pointsInto(x.outcome.Where, col) {
 			c.Doubts = append(c.Doubts, x.rule.Name)
@@ -361,6 +349,10 @@ func safe(v any) any {
 func (e *examination) place(w rules.Place) Place {
 	t := e.pass.Table
 	var p Place
+	if w.Stray > 0 {
+		p.Row = &w.Stray
+		return p
+	}
 	if w.Column != nil {
 		p.Column = optional(w.Column.Title())
 	}
@@ -369,6 +361,11 @@ func (e *examination) place(w rules.Place) Place {
 	}
 	row := t.Row(w.Row)
 	p.Row = &row
+	if by := e.pass.Columns.Label; by != nil {
+		if label, ok := by.Label(w.Row); ok {
+			p.Label = &label
+		}
+	}
 	if w.Column != nil {
 		cell, value := t.Address(w.Column, w.Row), w.Column.Cell(w.Row).Text
 		p.Cell, p.Value = &cell, &value
@@ -390,6 +387,7 @@ func (e *examination) remedies(x *examined) []Remedy {
 		}
 		r := Remedy{Remedy: t.remedy.Name, Text: wording.Sentence(text), Source: optional(t.remedy.Source), Tried: t.tried, Why: optional(t.why), Slopes: []TrialSlope{}, Judged: map[string]string{}}
 		if t.tried {
+			r.Under = e.speaker().trialWords(x, t)
 			e.fillTrial(&r, t)
 		}
 		all = append(all, r)

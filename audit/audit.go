@@ -73,7 +73,7 @@ func Table(t *readers.Table, request Request) (*Result, error) {
 
 // examine fits the model of the roles and runs every rule.
 func examine(t *readers.Table, request Request) (*examination, error) {
-	p := &rules.Pass{Table: t, Settings: request.Settings}
+	p := &rules.Pass{Table: t, Settings: request.Settings, Profiles: rules.Profiles{}}
 	if request.Roles.Named() {
 		columns, err := model.Resolve(t, request.Roles)
 		if err != nil {

@@ -241,6 +241,21 @@ type Finding struct {
 	Waived        *string        `json:"waived"`
 }
 
+// Fails reports whether a finding is at or above the least state that makes an
+// audit fail: "stop", "warn" or "thin"; any other word fails nothing. What is
+// waived never does.
+func (f *Finding) Fails(least string) bool {
+	rank := map[State]int{Thin: 1, Warn: 2, Stop: 3}
+	from, counts := rank[State(least)]
+	return counts && f.Waived == nil && rank[f.State] >= from
+}
+
+// IsOpen tells findings that ask for a decision; a pass that is thin only for
+// want of rows is told with the verdict.
+func (f *Finding) IsOpen() bool {
+	return f.State == Stop || f.State == Warn || (f.State == Thin && !f.ByPower)
+}
+
 // Calibration says how the rules whose alarms could be chance are held
 // together.
 type Calibration struct {
@@ -265,12 +280,14 @@ type Place struct {
 	Cell   *string `json:"cell"`
 	Column *string `json:"column"`
 	Value  *string `json:"value"`
+	Label  *string `json:"label"` // of the row, where a column identifies the rows
 }
 
 // Remedy is one thing to do about a finding, with what a trial of it gave.
 type Remedy struct {
 	Remedy        string            `json:"remedy"`
 	Text          string            `json:"text"`
+	Under         string            `json:"under"` // in a sentence: "with row 30 left out"; "" when not tried
 	Source        *string           `json:"source"`
 	Tried         bool              `json:"tried"`
 	Why           *string           `json:"why_not"` // why it was not tried

@@ -2,7 +2,6 @@ package audit
 
 import (
 	"errors"
-	"slices"
 
 	"footing/audit/calibrate"
 	"footing/rules"
@@ -168,12 +167,19 @@ func slopeOf(a model.Answers, group string) (model.Estimate, bool) {
 
 // explain finds consequences: a finding of the model that is not there once the
 // remedy of a finding of the table is carried out, or that names the same rows,
-// stands under that finding.
+// stands under that finding. So does a later finding of the table that names
+// no other cells: a code for a missing value lies far off too.
 // The first that explains it, in the order of the list, is its root.
 func (e *examination) explain() error {
-	for _, root := range e.findings {
-		if root.rule.Family != rules.OfTable || (root.state != Warn && root.state != Stop) {
+	for k, root := range e.findings {
+		if root.rule.Family != rules.OfTable || (root.state != Warn && root.state != Stop) || root.root != "" {
 			continue
+		}
+		for _, x := range e.findings[k+1:] {
+			if x.rule.Family == rules.OfTable && x.root == "" && x.outcome.Answer == rules.Breach &&
+				len(x.outcome.Denies) == 0 && cellsWithin(x.outcome.Where, root.outcome.Where) {
+				x.root = root.rule.Name
+			}
 		}
 		mended, err := e.mended(root)
 		if err != nil {
@@ -192,11 +198,36 @@ func (e *examination) explain() error {
 	return nil
 }
 
+// cellsWithin reports whether a finding names cells, and only ones that its root
+// names too.
+func cellsWithin(cells, of []rules.Place) bool {
+	if len(cells) > len(of) {
+		return false
+	}
+	named := make(map[rules.Place]bool, len(of))
+	for _, w := range of {
+		named[w] = true
+	}
+	for _, w := range cells {
+		if w.Row < 0 || w.Column == nil || !named[w] {
+			return false
+		}
+	}
+	return len(cells) > 0
+}
+
 // within reports whether a finding names rows, and only ones that its root
 // names too.
 func within(rows, of []int) bool {
+	if len(rows) > len(of) {
+		return false
+	}
+	named := make(map[int]bool, len(of))
+	for _, i := range of {
+		named[i] = true
+	}
 	for _, i := range rows {
-		if !slices.Contains(of, i) {
+		if !named[i] {
 			return false
 		}
 	}

@@ -67,6 +67,11 @@ func TestBlocksDoNotCutCharacters(t *testing.T) {
 			t.Fatalf("with %d bytes before, there are %d labels", pad, len(names))
 		}
 	}
+	// What one block tells of the encoding holds in the next.
+	mixed := "a,b\n" + strings.Repeat("é𝔉,1\n", 30_000) + strings.Repeat("x,1\n", 150_000) + "\xe9,2\n"
+	if got, want := refused(t, "kelp.csv", mixed, readers.Options{}).Error(), "kelp.csv:180002: is not UTF-8, while other lines are: save the file in one encoding, or name it with --encoding"; got != want {
+		t.Errorf("got:\n%s\nwant:\n%s", got, want)
+	}
 	big := "\xff\xfe" + utf16Bytes("a,b\n"+strings.Repeat("é𝔉,1\n", 30_000), false)
 	if names, _ := read(t, big, readers.Options{}).Columns[0].Levels(); len(names) != 1 {
 		t.Fatalf("in UTF-16 there are %d labels", len(names))

@@ -69,6 +69,7 @@ func TestTableIsFound(t *testing.T) {
 		{name: "blank rows between", text: survey(frondNames, 4, "", 4, ",,,", 4), header: 1, rows: "2-5 7-10 12-15"},
 		{name: "a header once more", text: survey(frondNames, 4, frondNames, 4), header: 1, rows: "2-5 7-10", stray: "6 header again"},
 		{name: "a header once more in other case", text: survey(frondNames, 4, "Frond,Site,Temperature,growth", 4), header: 1, rows: "2-5 7-10", stray: "6 header again"},
+		{name: "a header once more above the longer part", text: survey(frondNames, 3, "", frondNames, 8), header: 1, rows: "2-4 7-14", stray: "6 header again"},
 		{name: "a header once more after a gap", text: survey(frondNames, 4, "", frondNames, 4), header: 1, rows: "2-5 8-11", stray: "7 header again"},
 		{
 			name: "a header in another order", text: survey(frondNames, 4, "site,frond,growth,temperature", "exposed,F05,3.1,7.2", "sheltered,F06,3.2,7.5", frondNames, 4),
@@ -273,6 +274,7 @@ func TestUnevenRows(t *testing.T) {
 		},
 		{"blank fields too many", survey("site,x", "a,1", "b,2,,", "c,3"), "uneven 3: 4 of 2, used true"},
 		{"the last fields left out", survey("site,x,y,note", "a,1,2,", "b,2,3", "c,3", "a,4,5,ok"), "uneven 3: 3 of 4, used true\nuneven 4: 2 of 4, used true"},
+		{"two rows in thirty", survey("site,x", strings.Repeat("a,1\n", 14)+"b,2,3", strings.Repeat("a,1\n", 14)+"b,4,5"), "uneven 16: 3 of 2, used false\nuneven 31: 3 of 2, used false"},
 		{"a field left out before a text", survey("site,x,part,y", "a,1,leaf,2", "b,leaf,3", "c,3,leaf,4", "a,4,stem,5"), "uneven 3: 3 of 4, used false"},
 		{"all rows end in a delimiter", survey("site,x", "a,1,", "b,2,", "c,3,"), ""},
 		{"all rows lack the last field", survey("site,x,note", "a,1", "b,2", "c,3"), ""},
@@ -337,6 +339,7 @@ func TestDecimalSign(t *testing.T) {
 		{"the majority reads the file", lines("s;x", "a;7,5", "b;8,5", "c;9.5"), ",", `7.5 8.5 "9.5"`},
 		{"the majority reads the file, the other way", lines("s;x", "a;7.5", "b;8.5", "c;9,5"), ".", `7.5 8.5 "9,5"`},
 		{"commas between thousands where points decide", lines("s,x", "a,7.5", `b,"2,517"`, `c,"1,002,517.5"`), ".", "7.5 2517 1.0025175e+06"},
+		{"points are no evidence where a comma is", "s\tx\na\t1.042\nb\t2.517\nc\t7,5\n", ",", "1042 2517 7.5"},
 		{"whole numbers need no sign", lines("s;x", "a;7", "b;8"), ".", "7 8"},
 		{"spaces between thousands", lines("s;x", "a;1 042,5", "b;7"), ",", "1042.5 7"},
 	} {

@@ -1,5 +1,7 @@
 package readers
 
+import "slices"
+
 // fillMerged lets the value of cells that are merged down a column of labels hold
 // for all their rows; the grid is changed, and each cell marked. Cells merged
 // across columns or in a column of numbers stay as they are.
@@ -36,12 +38,7 @@ func (b *body) touches(m box) bool {
 }
 
 func (b *body) isLabel(column int) bool {
-	for _, c := range b.labels {
-		if c == column {
-			return true
-		}
-	}
-	return false
+	return slices.Contains(b.labels, column)
 }
 
 // fillDown copies the first cell of a range into the blank cells under it.

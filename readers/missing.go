@@ -1,5 +1,7 @@
 package readers
 
+import "slices"
+
 // isMissingCode tells whether a text is one of the usual ways to write that there
 // is no value, in any case.
 func isMissingCode(s string) bool {
@@ -61,19 +63,9 @@ func newDeclared(codes []string, decimal byte) declared {
 }
 
 func (d *declared) word(s string) bool {
-	for _, w := range d.words {
-		if w == s {
-			return true
-		}
-	}
-	return false
+	return slices.Contains(d.words, s)
 }
 
 func (d *declared) number(v float64) bool {
-	for _, n := range d.numbers {
-		if n == v {
-			return true
-		}
-	}
-	return false
+	return slices.Contains(d.numbers, v)
 }

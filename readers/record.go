@@ -23,6 +23,7 @@ type scanner struct {
 	r       io.Reader
 	buf     []byte
 	at, end int
+	from    int // where the current record starts in buf
 	eof     bool
 	limit   int64 // longest record in bytes
 	delim   byte  // 0 when each line is one field
@@ -69,6 +70,7 @@ func (s *scanner) scan() error {
 		if n > 0 {
 			s.line = s.next
 			s.next += s.lines
+			s.from = s.at
 			s.at += n
 			return nil
 		}

@@ -128,6 +128,29 @@ func TestLimits(t *testing.T) {
 	}
 }
 
+// endless is a stream without an end.
+type endless struct{ read int }
+
+func (e *endless) Read(p []byte) (int, error) {
+	for i := range p {
+		p[i] = "1,2\n"[i%4]
+	}
+	e.read += len(p)
+	return len(p), nil
+}
+
+// A stream is read no further than the limit, and a little for the last block.
+func TestStreamsStopAtTheLimit(t *testing.T) {
+	var e endless
+	_, err := readers.Read("-", &e, readers.Options{Limits: readers.Limits{File: 1 << 20}})
+	if want := "-: has more than 1 MiB, and more isn't read: raise it with --limit file=4MiB"; err == nil || err.Error() != want {
+		t.Errorf("got %v\nwant %s", err, want)
+	}
+	if e.read > 3<<20 {
+		t.Errorf("%d bytes were read", e.read)
+	}
+}
+
 func TestLimitsAreSetByName(t *testing.T) {
 	var l readers.Limits
 	for _, c := range [][2]string{{"file", "300MiB"}, {"unpacked", "1 GiB"}, {"line", "8KiB"}, {"columns", "20"}, {"cells", "1,000"}} {

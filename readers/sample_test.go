@@ -117,12 +117,13 @@ func TestWorkbookWithTroubles(t *testing.T) {
 
 // Formulas whose values were never stored are named and have no value.
 func TestFormulasWithoutValues(t *testing.T) {
-	rows := sheetRow(1, "site", "x")
+	var rows strings.Builder
+	rows.WriteString(sheetRow(1, "site", "x"))
 	for i := 2; i <= 9; i++ {
-		rows += sheetRow(i, "a", fmt.Sprint(i))
+		rows.WriteString(sheetRow(i, "a", fmt.Sprint(i)))
 	}
-	rows += `<row r="10"><c r="A10" t="inlineStr"><is><t>a</t></is></c><c r="B10"><f>B9/2</f><v/></c></row>`
-	table := readBook(t, sheetBook(rows), readers.Options{})
+	rows.WriteString(`<row r="10"><c r="A10" t="inlineStr"><is><t>a</t></is></c><c r="B10"><f>B9/2</f><v/></c></row>`)
+	table := readBook(t, sheetBook(rows.String()), readers.Options{})
 	x := table.Columns[1]
 	if x.CellKind(8) != readers.Uncached || x.Kind() != readers.NumberColumn {
 		t.Errorf("B10 is a %s in a column of %s", x.CellKind(8), x.Kind())
@@ -156,11 +157,12 @@ func TestLooseComma(t *testing.T) {
 
 // A zip archive that is sound around a sheet that is cut off.
 func TestCutSheet(t *testing.T) {
-	rows := sheetRow(1, "site", "x")
+	var rows strings.Builder
+	rows.WriteString(sheetRow(1, "site", "x"))
 	for i := 2; i <= 41; i++ {
-		rows += sheetRow(i, "a", fmt.Sprint(i))
+		rows.WriteString(sheetRow(i, "a", fmt.Sprint(i)))
 	}
-	sheet := worksheet(rows)
+	sheet := worksheet(rows.String())
 	got := refused(t, "kelp.xlsx", newBook("Kelp", sheet[:strings.Index(sheet, `<row r="30"`)+15]).pack(), readers.Options{}).Error()
 	if want := "kelp.xlsx:Kelp: xl/worksheets/sheet1.xml is cut off in row 30: save the workbook again, or take an older copy"; got != want {
 		t.Errorf("got:\n%s\nwant:\n%s", got, want)

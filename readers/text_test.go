@@ -35,7 +35,7 @@ func TestTextTables(t *testing.T) {
 		},
 		{
 			name: "bars at the ends of some lines only",
-			text: lines("|x|y", "|1|2", "a|3|4"),
+			text: lines("|x|y|", "|1|2|", "a|3|4|"),
 			want: lines("header 1: A  text; B x number; C y number;", `2: _ 1 2`, `3: "a" 3 4`),
 		},
 		{
@@ -51,8 +51,8 @@ func TestTextTables(t *testing.T) {
 		},
 		{
 			name: "a tie of delimiters goes to the one whose columns are numbers",
-			text: lines("a;b", "1,5;2,5", "2,5;3,5"),
-			want: lines("header 1: A a number; B b number;", `2: 1.5 2.5`, `3: 2.5 3.5`),
+			text: lines("a,b;c,d", "1,5;2,5", "2,5;3,5"),
+			want: lines("header 1: A a,b number; B c,d number;", `2: 1.5 2.5`, `3: 2.5 3.5`),
 		},
 		{
 			name: "one column, in which blank lines are blank cells",
@@ -118,6 +118,11 @@ func TestTextTables(t *testing.T) {
 			name: "a unit in most cells",
 			text: lines("site,length", "a,4.1 cm", "b,5 mm", "c,6", "d,7 cm", "e,8 cm", "f,9 cm"),
 			want: lines("header 1: A site text; B length [cm] number;", `2: "a" 4.1'cm`, `3: "b" "5 mm"`, `4: "c" 6`, `5: "d" 7'cm`, `6: "e" 8'cm`, `7: "f" 9'cm`),
+		},
+		{
+			name: "units that differ are no unit of the column",
+			text: lines("site,length,y", "a,4.1 cm,1", "b,5 mm,2", "c,6 m,3"),
+			want: lines("header 1: A site text; B length text; C y number;", `2: "a" "4.1 cm" 1`, `3: "b" "5 mm" 2`, `4: "c" "6 m" 3`),
 		},
 		{
 			name: "dates and truth values make columns of their own",

@@ -295,11 +295,11 @@ func TestSheetIsChosen(t *testing.T) {
 
 // stylesPart has one cell style for each number format, and three with looks.
 func withStyles(b *bookParts) *bookParts {
-	b.set("xl/styles.xml", `<styleSheet `+mainSpace+`><numFmts count="3"><numFmt numFmtId="164" formatCode="yyyy\-mm\-dd"/><numFmt numFmtId="165" formatCode="0.0&quot; mm/d&quot;"/><numFmt numFmtId="166" formatCode="[h]:mm"/></numFmts>`+
+	b.set("xl/styles.xml", `<styleSheet `+mainSpace+`><numFmts count="4"><numFmt numFmtId="164" formatCode="yyyy\-mm\-dd"/><numFmt numFmtId="165" formatCode="0.0&quot; mm/d&quot;"/><numFmt numFmtId="166" formatCode="[h]:mm"/><numFmt numFmtId="167" formatCode="0\ \d\a\y\s"/></numFmts>`+
 		`<fonts count="3"><font><sz val="11"/></font><font><strike/><sz val="11"/></font><font><color rgb="FFFF0000"/></font></fonts>`+
 		`<fills count="3"><fill><patternFill patternType="none"/></fill><fill><patternFill patternType="gray125"/></fill><fill><patternFill patternType="solid"><fgColor rgb="FFFFFF00"/></patternFill></fill></fills>`+
 		`<borders count="1"><border/></borders><cellStyleXfs count="1"><xf/></cellStyleXfs>`+
-		`<cellXfs count="10"><xf numFmtId="0" fontId="0" fillId="0"/>`+ // 0
+		`<cellXfs count="11"><xf numFmtId="0" fontId="0" fillId="0"/>`+ // 0
 		`<xf numFmtId="14" applyNumberFormat="1" fontId="0" fillId="0"/>`+ // 1 date
 		`<xf numFmtId="164" applyNumberFormat="1" fontId="0" fillId="0"/>`+ // 2 date
 		`<xf numFmtId="165" applyNumberFormat="1" fontId="0" fillId="0"/>`+ // 3 a number with a text that has d and m
@@ -309,6 +309,7 @@ func withStyles(b *bookParts) *bookParts {
 		`<xf numFmtId="0" fontId="2" applyFont="1" fillId="0"/>`+ // 7 red
 		`<xf numFmtId="0" fontId="0" fillId="2" applyFill="1"/>`+ // 8 yellow
 		`<xf numFmtId="0" fontId="99" applyFont="1" fillId="0"/>`+ // 9 a font that is not there
+		`<xf numFmtId="167" applyNumberFormat="1" fontId="0" fillId="0"/>`+ // 10 a number with letters
 		`</cellXfs></styleSheet>`)
 	b.relate("s1", "styles", "styles.xml")
 	return b
@@ -320,12 +321,12 @@ func styled(at string, style int, value string) string {
 }
 
 func TestNumberFormatsMakeDates(t *testing.T) {
-	rows := sheetRow(1, "d", "e", "f", "g", "h", "i") +
-		`<row r="2">` + styled("A2", 1, "45447") + styled("B2", 2, "45447.5") + styled("C2", 3, "45447") + styled("D2", 4, "0.35") + styled("E2", 5, "0.25") + styled("F2", 9, "1") + `</row>` +
-		`<row r="3">` + styled("A3", 1, "1") + styled("B3", 2, "60") + styled("C3", 3, "2.5") + styled("D3", 4, "1") + styled("E3", 5, "1.5") + styled("F3", 99, "2") + `</row>`
+	rows := sheetRow(1, "d", "e", "f", "g", "h", "i", "j") +
+		`<row r="2">` + styled("A2", 1, "45447") + styled("B2", 2, "45447.5") + styled("C2", 3, "45447") + styled("D2", 4, "0.35") + styled("E2", 5, "0.25") + styled("F2", 9, "1") + styled("G2", 99, "1") + `</row>` +
+		`<row r="3">` + styled("A3", 1, "1") + styled("B3", 2, "60") + styled("C3", 3, "2.5") + styled("D3", 4, "1") + styled("E3", 5, "1.5") + styled("F3", 10, "2") + `</row>`
 	table := readBook(t, withStyles(newBook("Kelp", rows)).pack(), readers.Options{})
-	same(t, show(table), lines("header 1: A d date; B e date; C f number; D g number; E h date; F i number;",
-		`2: @2024-06-04 @2024-06-04 12:00:00 45447 0.35 @06:00:00 1`, `3: @1899-12-31 @1900-02-28 2.5 1 @1899-12-31 12:00:00 2`))
+	same(t, show(table), lines("header 1: A d date; B e date; C f number; D g number; E h date; F i number; G j number;",
+		`2: @2024-06-04 @2024-06-04 12:00:00 45447 0.35 @06:00:00 1 1`, `3: @1899-12-31 @1900-02-28 2.5 1 @1899-12-31 12:00:00 2 _`))
 	if !hasNote(table, "the cells of column g (D) shown as per cent; the values are the stored fractions") {
 		t.Errorf("notes %q", table.Reading.Notes)
 	}
@@ -392,15 +393,15 @@ func TestHiddenCells(t *testing.T) {
 
 func TestMergedCells(t *testing.T) {
 	rows := sheetRow(1, "Kelp survey") + sheetRow(2, "site", "x", "y") + sheetRow(3, "a", "1", "5") + sheetRow(4, "", "2", "6") + sheetRow(5, "", "3", "7") +
-		sheetRow(6, "b", "4", "8") + sheetRow(7, "", "5", "") + sheetRow(8, "c", "", "9") + sheetRow(9, "d", "7", "3")
+		sheetRow(6, "b", "4", "8") + sheetRow(7, "", "5", "") + sheetRow(8, "c", "6", "9") + sheetRow(9, "", "", "3") + sheetRow(10, "d", "7", "3")
 	table := readBook(t, newBook("Kelp", `<worksheet `+mainSpace+`><sheetData>`+rows+`</sheetData><mergeCells>`+
-		`<mergeCell ref="A1:C1"/><mergeCell ref="A3:A5"/><mergeCell ref="A6:A7"/><mergeCell ref="C6:C7"/><mergeCell ref="A8:B8"/></mergeCells></worksheet>`).pack(), readers.Options{})
-	same(t, show(table), lines("header 2: A site text; B x number; C y number;", `3: "a" 1 5`, `4: "a" 2 6`, `5: "a" 3 7`, `6: "b" 4 8`, `7: "b" 5 _`, `8: "c" _ 9`, `9: "d" 7 3`, "above 1: title"))
+		`<mergeCell ref="A1:C1"/><mergeCell ref="A3:A5"/><mergeCell ref="A6:A7"/><mergeCell ref="C6:C7"/><mergeCell ref="A8:B9"/></mergeCells></worksheet>`).pack(), readers.Options{})
+	same(t, show(table), lines("header 2: A site text; B x number; C y number;", `3: "a" 1 5`, `4: "a" 2 6`, `5: "a" 3 7`, `6: "b" 4 8`, `7: "b" 5 _`, `8: "c" 6 9`, `9: _ _ 3`, `10: "d" 7 3`, "above 1: title"))
 	var got []string
 	for _, m := range table.Reading.Merged {
 		got = append(got, fmt.Sprintf("%s filled %t title %t", m.Range, m.Filled, m.Title))
 	}
-	same(t, strings.Join(got, "\n"), lines("A1:C1 filled false title true", "A3:A5 filled true title false", "A6:A7 filled true title false", "C6:C7 filled false title false", "A8:B8 filled false title false"))
+	same(t, strings.Join(got, "\n"), lines("A1:C1 filled false title true", "A3:A5 filled true title false", "A6:A7 filled true title false", "C6:C7 filled false title false", "A8:B9 filled false title false"))
 	site := table.Columns[0]
 	if site.Cell(0).Filled || !site.Cell(1).Filled || site.Cell(3).Filled {
 		t.Error("the wrong cells are marked as filled")

@@ -144,3 +144,12 @@ func withIntercept(columns [][]float64) [][]float64 {
 	}
 	return append([][]float64{one}, columns...)
 }
+
+func centred(v []float64) []float64 {
+	mean := numeric.Mean(v)
+	out := make([]float64, len(v))
+	for i := range v {
+		out[i] = v[i] - mean
+	}
+	return out
+}

@@ -15,38 +15,42 @@ var ConstantColumn = &Rule{
 	Asks:     "Does a column in use hold one value only?",
 	Why:      "A column that never changes cannot explain anything, and a response that never changes has nothing to be explained.",
 	Method:   "compares the values of the used rows",
-	Limit:    "the response, a predictor or a covariate has a single value; no chance is involved, so no false alarms",
+	Limit:    "a column with a role has a single value; a stop when that leaves an answer out. No chance is involved, so no false alarms",
 	Needs:    NeedsTable,
 	Remedies: []*remedy.Remedy{remedy.LeaveOut},
 	Run:      constantColumn,
 }
 
 func constantColumn(p *Pass) (Outcome, error) {
-	var inRole, elsewhere []string
-	var where []Place
-	for _, col := range p.Asked() {
+	found := p.tally()
+	var denied []Question
+	for _, col := range p.Table.Columns {
 		value, constant := onlyValue(p, col)
 		if !constant {
 			continue
 		}
-		where = append(where, Place{Row: -1, Column: col})
-		said := fmt.Sprintf("%s is %s in every row", col.Title(), value)
+		found.set(col, []Place{{Row: -1, Column: col}}, fmt.Sprintf("%s is %s in every row", col.Title(), value))
 		switch p.Columns.RoleOf(col) {
 		case "response", "predictor", "covariate":
-			inRole = append(inRole, said)
-		default:
-			elsewhere = append(elsewhere, said)
+			denied = p.everyQuestion()
+		case "group":
+			if denied == nil {
+				denied = []Question{{Difference: true}}
+			}
 		}
 	}
-	o := sound("every column in use takes more than one value")
-	switch {
-	case len(inRole) > 0:
-		o = breach(wording.List(inRole) + ": nothing can be learnt from it")
-		o.Denies = p.everyQuestion()
-	case len(elsewhere) > 0:
-		o = sound(wording.List(elsewhere))
+	if p.Design == nil {
+		// Without roles a constant column is no more than a fact of the table.
+		o := sound("every column takes more than one value")
+		if found.used.total > 0 {
+			o.Message, o.Where = found.used.words(), found.used.where
+		}
+		return o, nil
 	}
-	o.Where = where
+	o := found.outcome("every column in use takes more than one value", func(words string, _ int) string {
+		return words + ": nothing can be learnt from it"
+	})
+	o.Denies = denied
 	return o, nil
 }
 
@@ -57,19 +61,44 @@ func onlyValue(p *Pass, col *readers.Column) (string, bool) {
 	if p.Design != nil {
 		rows = p.Design.Rows
 	}
-	value, seen := "", 0
+	if f := p.Profile(col); p.Design == nil && f.Distinct != 1 {
+		return "", false
+	} else if p.Design != nil && len(f.Values) > 0 {
+		return onlyNumber(col, rows)
+	}
+	names, codes := col.Levels()
+	only, seen := int32(-1), 0
 	for _, i := range rows {
-		label, ok := col.Label(i)
+		switch c := codes[i]; {
+		case c < 0:
+			continue
+		case seen > 0 && c != only:
+			return "", false
+		default:
+			only = c
+			seen++
+		}
+	}
+	if seen < 2 {
+		return "", false
+	}
+	return names[only], true
+}
+
+func onlyNumber(col *readers.Column, rows []int) (string, bool) {
+	only, seen := 0.0, 0
+	for _, i := range rows {
+		v, ok := col.Number(i)
 		if !ok {
 			continue
 		}
-		if seen > 0 && label != value {
+		if seen > 0 && v != only {
 			return "", false
 		}
-		value = label
+		only = v
 		seen++
 	}
-	return value, seen > 1
+	return wording.Number(only), seen > 1
 }
 
 func allRows(t *readers.Table) []int {

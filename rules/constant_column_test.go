@@ -22,5 +22,9 @@ func TestConstantColumn(t *testing.T) {
 		s.rows[i][0] = "exposed"
 	}
 	p = passOf(t, s, kelpRoles)
-	expect(t, p, ask(t, ConstantColumn, p), Sound, "site is exposed in every row", "site")
+	o = ask(t, ConstantColumn, p)
+	expect(t, p, o, Breach, "site is exposed in every row", "site")
+	if len(o.Denies) != 1 || !o.Denies[0].Difference {
+		t.Errorf("denies %v, want the difference alone", o.Denies)
+	}
 }

@@ -42,10 +42,10 @@ func constantVarianceChance(p *Pass) (*Chance, string) {
 		return nil, "one mean and no predictor: nothing for the scatter to vary with"
 	}
 	c := &Chance{Members: []Member{p.koenker()}, Floor: p.spreadFloor()}
-	for _, m := range p.spreadAlong() {
-		c.Members = append(c.Members, m)
-	}
-	if len(p.Design.Groups) > 1 {
+	c.Members = append(c.Members, p.spreadAlong()...)
+	// The two rows of a pair are as far from its median as each other: pairs alone
+	// leave nothing within groups to compare with.
+	if len(p.Design.Groups) > 1 && slices.Max(p.Design.GroupSizes()) > 2 {
 		if m, ok := p.brownForsythe(); ok {
 			c.Members = append(c.Members, m)
 		}

@@ -5,7 +5,6 @@ import (
 	"math"
 	"slices"
 	"strconv"
-	"strings"
 
 	"footing/readers"
 	"footing/rules/numeric"
@@ -21,7 +20,7 @@ var CopiedRows = &Rule{
 	Why:    "A row that stands twice counts twice, and makes intervals narrower than the measurements allow.",
 	Method: "rows equal in every column but label, order and running numbers, against the chance that rounded measurements coincide: " +
 		"pairs alike in labels and set values, times the share of pairs that agree in each measured column by its resolution and scatter",
-	Limit:    "copies whose chance of coming about by rounding is below 0.2 %, so that sound tables are suspected in fewer than 1 in 500",
+	Limit:    "so many copies whose chance of coming about by rounding is below 0.2 %, so that sound tables are suspected in fewer than 1 in 500",
 	Needs:    NeedsTable,
 	Remedies: []*remedy.Remedy{remedy.DropCopies},
 	Run:      copiedRows,
@@ -46,6 +45,7 @@ func copiedRows(p *Pass) (Outcome, error) {
 		return sound("no row repeats another"), nil
 	}
 	chance := coincidence(p.Table, columns, sets)
+	chance = ofSoMany(chance, sets)
 	if chance >= copyChance {
 		o := sound(fmt.Sprintf("%s alike in every value, as rounded measurements may well be", wording.Count(len(sets), "pair or set of rows")))
 		o.Evidence = map[string]any{"chance": chance}
@@ -81,7 +81,7 @@ func (p *Pass) comparable() []*readers.Column {
 	var all []*readers.Column
 	for _, col := range p.Table.Columns {
 		role := p.Columns.RoleOf(col)
-		if role == "label" || role == "order" || (role == "" && countsRows(col)) {
+		if role == "label" || role == "order" || p.counts(col) {
 			continue
 		}
 		all = append(all, col)
@@ -89,63 +89,71 @@ func (p *Pass) comparable() []*readers.Column {
 	return all
 }
 
-// countsRows tells identifiers: texts that are all different, or whole numbers
-// that rise by one.
-func countsRows(col *readers.Column) bool {
-	seen := map[string]bool{}
-	rising := true
-	previous, have := 0.0, false
-	for i := range col.Len() {
-		label, ok := col.Label(i)
-		if !ok {
-			continue
-		}
-		if seen[label] {
-			return false
-		}
-		seen[label] = true
-		if v, number := col.Number(i); number {
-			if have && v != previous+1 {
-				rising = false
-			}
-			previous, have = v, true
-		}
-	}
-	return len(seen) > 1 && (col.Kind() != readers.NumberColumn || rising)
-}
-
 // equalRows groups the rows that are equal in all columns and hold a number in
 // at least one, in file order.
 func equalRows(t *readers.Table, columns []*readers.Column) [][]int {
-	at := map[string]int{}
+	first := map[uint64]int{}
+	at := map[int]int{}
 	var sets [][]int
 	for i := range t.Len() {
 		if t.RowFault(i) != "" {
 			continue
 		}
-		var key strings.Builder
-		numbers := 0
-		for _, col := range columns {
-			if v, ok := col.Number(i); ok {
-				numbers++
-				key.WriteString(strconv.FormatUint(math.Float64bits(v), 16))
-			} else {
-				key.WriteString(strconv.Quote(col.Cell(i).Text))
-			}
-			key.WriteByte(';')
-		}
+		key, numbers := rowKey(columns, i)
 		if numbers == 0 {
 			continue
 		}
-		k, seen := at[key.String()]
+		head, seen := first[key]
 		if !seen {
+			first[key] = i
+			continue
+		}
+		if !sameRow(columns, head, i) {
+			continue // two keys met by chance, once in 2^64
+		}
+		k, known := at[head]
+		if !known {
 			k = len(sets)
-			at[key.String()] = k
-			sets = append(sets, nil)
+			at[head] = k
+			sets = append(sets, []int{head})
 		}
 		sets[k] = append(sets[k], i)
 	}
-	return slices.DeleteFunc(sets, func(s []int) bool { return len(s) < 2 })
+	slices.SortFunc(sets, func(a, b []int) int { return a[0] - b[0] })
+	return sets
+}
+
+// rowKey mixes the cells of a row into one number (FNV-1a over whole words),
+// and counts its numbers.
+func rowKey(columns []*readers.Column, i int) (key uint64, numbers int) {
+	key = 14695981039346656037
+	for _, col := range columns {
+		word := uint64(0xffff)
+		if v, ok := col.Number(i); ok {
+			numbers++
+			word = math.Float64bits(v)
+		} else if kind := col.CellKind(i); kind != readers.Blank {
+			_, codes := col.Levels()
+			word = uint64(kind)<<32 | uint64(uint32(codes[i]))
+		}
+		key = (key ^ word) * 1099511628211
+		key ^= key >> 29
+	}
+	return key, numbers
+}
+
+func sameRow(columns []*readers.Column, i, k int) bool {
+	for _, col := range columns {
+		v, ok := col.Number(i)
+		w, too := col.Number(k)
+		switch {
+		case ok != too, ok && v != w:
+			return false
+		case !ok && (col.CellKind(i) != col.CellKind(k) || col.CellKind(i) != readers.Blank && col.Cell(i).Text != col.Cell(k).Text):
+			return false
+		}
+	}
+	return true
 }
 
 // coincidence is the chance of at least one pair of equal rows among honest
@@ -161,8 +169,8 @@ func coincidence(t *readers.Table, columns []*readers.Column, sets [][]int) floa
 			labels = append(labels, col)
 		}
 	}
-	expected := pairsAlike(labels, rows)
 	strata := strataOf(labels, rows)
+	expected := pairsAlike(strata)
 	var before [][]float64
 	for _, col := range numbers {
 		values, ok := complete(col, rows)
@@ -173,6 +181,27 @@ func coincidence(t *readers.Table, columns []*readers.Column, sets [][]int) floa
 		before = append(before, values)
 	}
 	return -math.Expm1(-expected)
+}
+
+// ofSoMany turns the chance of any copy into that of as many as there are, by
+// Poisson's law; where coincidences are common, copies come in heaps and the law
+// does not hold.
+func ofSoMany(chance float64, sets [][]int) float64 {
+	expected := -math.Log1p(-chance)
+	if expected > 0.2 {
+		return chance
+	}
+	copies := 0
+	for _, set := range sets {
+		copies += len(set) - 1
+	}
+	fewer, term := 0.0, math.Exp(-expected)
+	for k := range copies {
+		fewer += term
+		term *= expected / float64(k+1)
+	}
+	// The first term left out stands for the rest when the difference is lost.
+	return max(1-fewer, min(term, chance))
 }
 
 func withoutCopies(t *readers.Table, sets [][]int) []int {
@@ -193,27 +222,30 @@ func withoutCopies(t *readers.Table, sets [][]int) []int {
 
 // strataOf numbers the combinations of labels.
 func strataOf(labels []*readers.Column, rows []int) []int {
-	at := map[string]int{}
 	code := make([]int, len(rows))
-	for k, i := range rows {
-		var key strings.Builder
-		for _, col := range labels {
-			label, _ := col.Label(i)
-			key.WriteString(strconv.Quote(label))
+	for _, col := range labels {
+		type pair struct {
+			stratum int
+			label   int32
 		}
-		c, seen := at[key.String()]
-		if !seen {
-			c = len(at)
-			at[key.String()] = c
+		_, of := col.Levels()
+		at := map[pair]int{}
+		for k, i := range rows {
+			key := pair{code[k], of[i]}
+			c, seen := at[key]
+			if !seen {
+				c = len(at)
+				at[key] = c
+			}
+			code[k] = c
 		}
-		code[k] = c
 	}
 	return code
 }
 
-func pairsAlike(labels []*readers.Column, rows []int) float64 {
+func pairsAlike(strata []int) float64 {
 	size := map[int]float64{}
-	for _, c := range strataOf(labels, rows) {
+	for _, c := range strata {
 		size[c]++
 	}
 	pairs := 0.0
@@ -258,37 +290,26 @@ func agreement(values []float64, strata []int, before [][]float64) float64 {
 	for _, s := range strata {
 		groups = max(groups, s+1)
 	}
-	var design [][]float64
-	if groups*2 < n {
-		for g := range groups {
-			d := make([]float64, n)
-			for i, s := range strata {
-				if s == g {
-					d[i] = 1
-				}
-			}
-			design = append(design, d)
-		}
-	} else {
-		one := make([]float64, n)
-		for i := range one {
-			one[i] = 1
-		}
-		design = append(design, one)
+	// The levels of the strata are taken off by their means, which leaves the
+	// same residuals as a column for each would.
+	level := strata
+	if groups*2 >= n {
+		level, groups = make([]int, n), 1
 	}
+	var design [][]float64
 	for _, b := range before {
-		if len(design) < n-2 {
-			design = append(design, centred(b))
+		if len(design)+groups < n-2 && len(design) < mostBefore {
+			design = append(design, within(b, level, groups))
 		}
 	}
 	basis := numeric.NewBasis(design, n)
 	rest := make([]float64, n)
-	basis.Residual(rest, centred(values))
+	basis.Residual(rest, within(values, level, groups))
 	ss := 0.0
 	for _, r := range rest {
 		ss += r * r
 	}
-	sd := math.Sqrt(ss / float64(max(1, n-basis.Rank())))
+	sd := math.Sqrt(ss / float64(max(1, n-groups-basis.Rank())))
 	byRounding := 1.0
 	if sd > 0 {
 		byRounding = min(1, resolution(values)/(2*math.Sqrt(math.Pi)*sd))
@@ -296,11 +317,20 @@ func agreement(values []float64, strata []int, before [][]float64) float64 {
 	return max(byRounding, observedAgreement(values, strata))
 }
 
-func centred(v []float64) []float64 {
-	mean := numeric.Mean(v)
+// mostBefore bounds how many columns the others are seen beside, so that a wide
+// table costs no more than its cells.
+const mostBefore = 8
+
+// within takes the mean of its level off each value.
+func within(v []float64, level []int, levels int) []float64 {
+	sum, size := make([]float64, levels), make([]float64, levels)
+	for i, x := range v {
+		sum[level[i]] += x
+		size[level[i]]++
+	}
 	out := make([]float64, len(v))
-	for i := range v {
-		out[i] = v[i] - mean
+	for i, x := range v {
+		out[i] = x - sum[level[i]]/size[level[i]]
 	}
 	return out
 }
@@ -327,32 +357,4 @@ func observedAgreement(values []float64, strata []int) float64 {
 		return 0
 	}
 	return equal / pairs
-}
-
-// resolution is the step to which values were rounded: the smallest power of
-// ten of which all are multiples, no finer than 1e-12 of the largest.
-func resolution(values []float64) float64 {
-	largest := 0.0
-	for _, v := range values {
-		largest = max(largest, math.Abs(v))
-	}
-	if largest == 0 {
-		return 0
-	}
-	step := math.Pow(10, math.Floor(math.Log10(largest)))
-	for step > largest*1e-12 {
-		fits := true
-		for _, v := range values {
-			k := v / step
-			if math.Abs(k-math.Round(k)) > 1e-6 {
-				fits = false
-				break
-			}
-		}
-		if fits {
-			return step
-		}
-		step /= 10
-	}
-	return step
 }

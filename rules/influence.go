@@ -48,13 +48,13 @@ func largestPull(d *model.Diagnostics) (pull, bool) {
 func influenceChance(p *Pass) (*Chance, string) {
 	best, ok := largestPull(p.Fit.Diagnostics())
 	if !ok {
-		return nil, "no slope, or too few rows to leave one out"
+		return nil, "no slope and no mean, or too few rows to leave one out"
 	}
 	reach := p.reach()
 	closed := func(t float64) float64 { return unionBound(p.Fit, reach, t) }
 	return &Chance{
 		Members: []Member{{
-			Test: Test{Name: "largest DFBETAS of a slope", Value: best.value, P: closed(best.value)},
+			Test: Test{Name: "largest DFBETAS of a " + p.answerWord(), Value: best.value, P: closed(best.value)},
 			New: func() func(*Sample) float64 {
 				return func(s *Sample) float64 {
 					largest := 0.0
@@ -71,6 +71,14 @@ func influenceChance(p *Pass) (*Chance, string) {
 		Breach: func() Trouble { return p.pullBreach(closed) },
 		Floor:  &Floor{Effect: best.value, Least: leastPull, Words: fmt.Sprintf("a pull of %s standard errors (floor %s)", wording.Figure(best.value, 2), wording.Number(leastPull))},
 	}, ""
+}
+
+// answerWord is what the first question is about.
+func (p *Pass) answerWord() string {
+	if p.Design.X() == nil {
+		return "mean"
+	}
+	return "slope"
 }
 
 const (
@@ -138,8 +146,8 @@ func (p *Pass) pullBreach(closed func(float64) float64) Trouble {
 	h := p.Fit.Leverage[row]
 	df := float64(p.Fit.DF - 1)
 	return Trouble{
-		Short: "a row that pulls a slope",
-		Words: "one row that pulls a slope by its whole half-width",
+		Short: "a row that pulls a " + p.answerWord(),
+		Words: "one row that pulls a " + p.answerWord() + " by its whole half-width",
 		New: func() func(*rand.Rand, []float64) {
 			return func(random *rand.Rand, z []float64) {
 				for i := range z {
@@ -160,8 +168,8 @@ func influence(p *Pass) (Outcome, error) {
 	best, _ := largestPull(d)
 	at := p.Table.Row(p.Design.Rows[best.row])
 	o := judged(p.Joint,
-		fmt.Sprintf("row %d moves the slope%s by %s standard errors", at, ofGroup(p, best.group), wording.Figure(best.value, 2)),
-		"no row pulls a slope further than chance lets one")
+		fmt.Sprintf("row %d moves the %s%s by %s standard errors", at, p.answerWord(), ofGroup(p, best.group), wording.Figure(best.value, 2)),
+		"no row pulls a "+p.answerWord()+" further than chance lets one")
 	o.Statistic = p.Joint.First().measure()
 	cook, cookRow := largestCook(d.Cook)
 	o.Evidence = map[string]any{"largest_dfbetas": best.value, "row": at, "largest_cook": cook}

@@ -13,7 +13,6 @@ import (
 
 	"footing/readers"
 	"footing/rules/remedy"
-	"footing/rules/wording"
 )
 
 // LabelVariants asks whether one label is written in several ways.
@@ -24,81 +23,78 @@ var LabelVariants = &Rule{
 	Why:    "Each spelling becomes a group of its own, with a line of its own, and leaves the group it belongs to.",
 	Method: "compares labels after folding case, spaces, punctuation, compatibility forms (Unicode NFKC) and letters of other scripts that look alike; " +
 		"and rare labels one letter away from a common one",
-	Limit:    "two labels that fold to the same, or a label of at most 5 % of the rows one letter from one ten times as frequent; labels that differ in a digit are left alone",
+	Limit: "two labels that fold to the same, or a label of one row or at most 5 % of them one letter from one five times as frequent; labels that differ in a digit, " +
+		"and those of less than four letters, are left alone; no chance is involved",
 	Needs:    NeedsTable,
 	Remedies: []*remedy.Remedy{remedy.MergeLabels},
 	Run:      labelVariants,
 }
 
 func labelVariants(p *Pass) (Outcome, error) {
-	var said []string
-	var where []Place
-	o := sound("no label is written in several ways")
+	found := p.tally()
+	merge := map[string]string{}
 	for _, col := range p.labelColumns() {
 		variants := variantsOf(col)
+		names, codes := col.Levels()
 		for _, rare := range slices.Sorted(maps.Keys(variants)) {
 			common := variants[rare]
 			var cells []string
-			for i := range col.Len() {
-				if label, ok := col.Label(i); ok && label == rare {
+			var where []Place
+			at := int32(slices.Index(names, rare))
+			for i, c := range codes {
+				if c == at {
 					where = append(where, Place{Row: i, Column: col})
 					cells = append(cells, p.Table.Address(col, i))
 				}
 			}
-			said = append(said, fmt.Sprintf("%q at %s may be %q%s", rare, wording.Some(cells, 5), common, foreignLetter(rare, common)))
+			found.set(col, where, fmt.Sprintf("%q at %s may be %q%s", rare, someOf(cells, len(cells)), common, foreignLetter(rare, common)))
 			if col == p.Columns.Group {
-				if o.Target.Labels == nil {
-					o.Target.Labels = map[string]string{}
-				}
-				o.Target.Labels[rare] = common
+				merge[rare] = common
 			}
 		}
 	}
-	if len(said) == 0 {
-		return o, nil
+	o := found.outcome("no label is written in several ways", func(words string, _ int) string {
+		return fmt.Sprintf("one label in two spellings: %s; each spelling counts as a label of its own here", words)
+	})
+	if len(merge) > 0 {
+		o.Target.Labels = merge
 	}
-	target := o.Target
-	o = breach(fmt.Sprintf("one label in two spellings: %s; each spelling counts as a label of its own here", wording.List(said)))
-	o.Where, o.Target = where, target
 	return o, nil
 }
 
-// labelColumns are the columns whose labels make groups.
+// labelColumns are the columns whose labels make groups, and other columns of
+// text; a column of row labels has rules of its own.
 func (p *Pass) labelColumns() []*readers.Column {
-	if p.Design == nil {
-		var text []*readers.Column
-		for _, col := range p.Table.Columns {
-			if col.Kind() == readers.TextColumn {
-				text = append(text, col)
-			}
-		}
-		return text
-	}
 	var all []*readers.Column
-	for _, col := range append([]*readers.Column{p.Columns.Group, p.Columns.Subject}, p.Columns.Covariates...) {
-		if col != nil && (col.Kind() != readers.NumberColumn || col == p.Columns.Group) {
+	for _, col := range p.Table.Columns {
+		if col == p.Columns.Group || col == p.Columns.Subject && col.Kind() != readers.NumberColumn || col.Kind() == readers.TextColumn && col != p.Columns.Label {
 			all = append(all, col)
 		}
 	}
 	return all
 }
 
+// mostLabels is the number of labels beyond which they are not compared pair
+// by pair.
+const mostLabels = 1000
+
 // variantsOf maps each label that looks like a spelling of a commoner one to
 // that one.
 func variantsOf(col *readers.Column) map[string]string {
 	count := map[string]int{}
 	total := 0
-	for i := range col.Len() {
-		if label, ok := col.Label(i); ok {
-			count[label]++
+	names, codes := col.Levels()
+	for _, c := range codes {
+		if c >= 0 {
+			count[names[c]]++
 			total++
 		}
 	}
-	labels := slices.Sorted(maps.Keys(count))
 	variants := map[string]string{}
-	if len(labels) > total/2 && len(labels) > 50 {
+	if 2*len(names) > total && len(names) > 50 || len(names) > mostLabels {
 		return variants // a column of identifiers, not of labels
 	}
+	labels := slices.Sorted(maps.Keys(count))
 	slices.SortStableFunc(labels, func(a, b string) int { return count[b] - count[a] })
 	byFold := map[string]string{}
 	for _, label := range labels {
@@ -108,11 +104,11 @@ func variantsOf(col *readers.Column) map[string]string {
 			continue
 		}
 		byFold[key] = label
-		if count[label]*20 > total {
+		if count[label] > 1 && count[label]*20 > total {
 			continue
 		}
 		for _, common := range labels {
-			if count[common] >= 10*count[label] && oneLetterApart(fold(common), key) {
+			if count[common] >= 5*count[label] && oneLetterApart(fold(common), key) {
 				variants[label] = common
 				break
 			}
@@ -126,7 +122,7 @@ func variantsOf(col *readers.Column) map[string]string {
 // A label of signs only is kept as it is.
 func fold(label string) string {
 	var b strings.Builder
-	for _, r := range cases.Fold().String(norm.NFKC.String(label)) {
+	for _, r := range cases.Fold().String(strings.Map(capitalAlike, norm.NFKC.String(label))) {
 		if unicode.IsLetter(r) || unicode.IsDigit(r) {
 			b.WriteRune(lookAlike(r))
 		} else if r == '+' || r == '-' && b.Len() == 0 || r == '.' && followsDigit(b.String()) {
@@ -148,6 +144,20 @@ func followsDigit(s string) bool {
 // like; the pairs are common practice.
 func lookAlike(r rune) rune {
 	const foreign, latin = "авеікмнорстухѕјһԁԛԝαβικνορτυχ", "abeikmhopctyxsjhdqwabikvoptux"
+	return alike(r, foreign, latin)
+}
+
+// capitalAlike does the same for capitals, whose small forms may look like
+// another letter: the Greek capital H is a small eta.
+func capitalAlike(r rune) rune {
+	const foreign, latin = "АВЕІКМНОРСТУХЅЈԌΑΒΕΖΗΙΚΜΝΟΡΤΥΧ", "ABEIKMHOPCTYXSJGABEZHIKMNOPTYX"
+	return alike(r, foreign, latin)
+}
+
+func alike(r rune, foreign, latin string) rune {
+	if r < utf8.RuneSelf {
+		return r
+	}
 	at := strings.IndexRune(foreign, r)
 	if at < 0 {
 		return r
@@ -160,8 +170,9 @@ func lookAlike(r rune) rune {
 func foreignLetter(a, b string) string {
 	for _, label := range []string{a, b} {
 		for _, r := range label {
-			if unicode.In(r, unicode.Cyrillic, unicode.Greek) && lookAlike(unicode.ToLower(r)) != unicode.ToLower(r) {
-				return fmt.Sprintf(" (%q holds U+%04X, %s)", label, r, scriptOf(r))
+			latin := lookAlike(capitalAlike(r))
+			if latin != r && unicode.In(r, unicode.Cyrillic, unicode.Greek) {
+				return fmt.Sprintf(" (%q holds U+%04X, %s %c)", label, r, scriptOf(r), latin)
 			}
 		}
 	}
@@ -170,9 +181,9 @@ func foreignLetter(a, b string) string {
 
 func scriptOf(r rune) string {
 	if unicode.Is(unicode.Cyrillic, r) {
-		return "a Cyrillic letter"
+		return "Cyrillic"
 	}
-	return "a Greek letter"
+	return "Greek"
 }
 
 // oneLetterApart tells labels of four letters or more that one inserted, lost,

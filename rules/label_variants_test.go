@@ -12,7 +12,7 @@ func TestLabelVariants(t *testing.T) {
 		{"a space within", "shel tered", Breach, `may be "sheltered"`},
 		{"an underscore", "sheltered_", Breach, `may be "sheltered"`},
 		{"full-width letters", "ｓheltered", Breach, `may be "sheltered"`},
-		{"a Cyrillic e", "shеltered", Breach, "U+0435, a Cyrillic letter"},
+		{"a Cyrillic e", "shеltered", Breach, "U+0435, Cyrillic e"},
 		{"a letter lost", "sheltred", Breach, `may be "sheltered"`},
 		{"two letters swapped", "shelteerd", Breach, `may be "sheltered"`},
 		{"another word", "open", Sound, "no label"},

@@ -4,12 +4,31 @@ package rules
 // one file, its test and one line here.
 var All = []*Rule{
 	// the table
+	UnevenRows,
+	StrayRows,
+	HiddenCells,
+	UncachedFormulas,
+	SpreadsheetErrors,
+	NumberFormat,
+	MixedContent,
+	CensoredValues,
+	DatesAmongNumbers,
 	MissingValues,
 	MissingCodes,
-	MixedContent,
+	MissingPattern,
 	LabelVariants,
+	ReusedLabels,
 	CopiedRows,
+	RepeatedRun,
+	SwappedCells,
+	UnitShift,
+	FarValues,
+	OutOfRange,
+	PileUp,
+	RoundingHeaps,
+	Continuity,
 	ConstantColumn,
+	OrderDrift,
 
 	// the model; what makes other rules alarm comes first
 	Collinearity,

@@ -2,12 +2,12 @@ package rules
 
 import (
 	"fmt"
-	"maps"
 	"math"
 	"slices"
 	"strings"
 
 	"footing/readers"
+	"footing/rules/numeric"
 	"footing/rules/remedy"
 	"footing/rules/wording"
 )
@@ -18,147 +18,231 @@ var MissingCodes = &Rule{
 	Family: OfTable,
 	Asks:   "Does a value such as -999 stand for a missing one?",
 	Why:    "One -999 taken for a measurement can turn a slope round.",
-	Method: "looks for values that are habitual codes (all nines, -1, 0, other repeated whole numbers) and lie far from all other values of their column",
-	Limit: "a code of nines alone beyond the others by more than their whole range, or a repeated whole number beyond them by half of it (0 and -1) or twice it (any other); " +
-		"measured values reach so far only when a column has a few wild ones, which deserve the question too",
+	Method: "looks for numbers that are habitual codes (all nines, repeated sevens or eights, 0, -1, other repeated whole numbers), outside the bulk of their column " +
+		"(the middle 96 % of the numbers that are no such codes), and repeated or impossible beside the rest, as a negative number among positive ones is. " +
+		"These are used, and answers without them are told. Codes in words are taken as missing",
+	Limit: "all nines beyond the bulk by its width, or by a quarter of it when repeated or impossible; 0 and -1 repeated, or -1 impossible, by half of it; repeated sevens or eights by its width; " +
+		"other repeated whole numbers by twice it; and beyond the farthest of the others, unless it is a repeated or impossible nine, 0 or -1. 0 is no suspect in a column that was set by design. Two codes in words, or one that may mean another thing (a dash, nd)",
 	Needs:    NeedsTable,
 	Remedies: []*remedy.Remedy{remedy.AsMissing},
 	Run:      missingCodes,
 }
 
 func missingCodes(p *Pass) (Outcome, error) {
-	text := map[string]int{}
-	var where []Place
-	var suspects []string
+	text, numbers := p.codesInWords(), p.tally()
 	var flags []string
-	rows := map[int]bool{}
-	for _, col := range p.Asked() {
-		if p.Design != nil && (col == p.Columns.Label || col == p.Columns.Order) {
-			continue
-		}
-		for i := range col.Len() {
-			if cell := col.Cell(i); cell.Kind == readers.Code {
-				text[strings.ToLower(cell.Text)]++
-			}
-		}
-		if col.Kind() != readers.NumberColumn || col == p.Columns.Group || col == p.Columns.Subject {
-			continue
-		}
-		for _, code := range suspectedCodes(col) {
+	for _, col := range p.measured() {
+		f := p.Profile(col)
+		for _, code := range suspectedCodes(f, p.mayBeSet(col)) {
+			var where []Place
 			var cells []string
-			for i := range col.Len() {
-				if v, ok := col.Number(i); ok && v == code {
-					where = append(where, Place{Row: i, Column: col})
-					rows[i] = true
-					cells = append(cells, p.Table.Address(col, i))
+			for k, v := range f.Values {
+				if v == code {
+					where = append(where, Place{Row: f.Rows[k], Column: col})
+					if len(cells) <= mostSaid {
+						cells = append(cells, p.Table.Address(col, f.Rows[k]))
+					}
 				}
 			}
-			suspects = append(suspects, fmt.Sprintf("%s is %s at %s", col.Title(), wording.Number(code), wording.Some(cells, 5)))
-			flags = append(flags, "--missing "+wording.Number(code))
+			numbers.set(col, where, fmt.Sprintf("%s is %s at %s", col.Title(), wording.Number(code), someOf(cells, len(where))))
+			if p.Uses(col) {
+				flags = append(flags, "--missing "+wording.Number(code))
+			}
 		}
 	}
-	if len(suspects) > 0 {
-		return suspectedOutcome(p, suspects, flags, where, rows), nil
+	if numbers.used.total == 0 {
+		o := text.outcome()
+		if numbers.unused.total > 0 {
+			o.Message += "; only in columns that are not used: " + numbers.unused.words()
+			o.Where = append(o.Where, numbers.unused.where...)
+		}
+		return o, nil
 	}
-	return textCodes(p, text), nil
-}
-
-func suspectedOutcome(p *Pass, suspects, flags []string, where []Place, rows map[int]bool) Outcome {
 	slices.Sort(flags)
 	flags = slices.Compact(flags)
-	o := breach(wording.List(suspects) + ", far from all other values: perhaps a code for a missing value; it is used as a number here")
-	o.Where = where
-	o.Advice = "run again with " + strings.Join(flags, " ") + " if the value stands for a missing one; mend the cell if it was mistyped"
-	o.Evidence = map[string]any{"cells": len(where), "flags": flags}
-	if p.Design != nil {
-		o.Target.Rows = p.Design.RowsAt(slices.Sorted(maps.Keys(rows)))
+	o := numbers.outcome("", func(words string, _ int) string {
+		return words + ", far from all other values: perhaps a code for a missing value; it is used as a number here"
+	})
+	if len(text.where) > 0 {
+		o.Message += "; " + text.message()
+		o.Where = append(o.Where, text.where...)
 	}
-	return o
+	o.Advice = "run again with " + strings.Join(flags, " ") + " if the value stands for a missing one; mend the cell if it was mistyped"
+	o.Evidence = map[string]any{"cells": len(numbers.used.where), "flags": flags}
+	o.Target.Rows = p.target(numbers.used.where)
+	return o, nil
 }
 
-// textCodes tells of codes in words, which are taken as missing at once.
-func textCodes(p *Pass, text map[string]int) Outcome {
-	if len(text) == 0 {
+// someOf lists the first cells and says how many more there are.
+func someOf(cells []string, total int) string {
+	shown := cells[:min(len(cells), mostSaid)]
+	if total > len(shown) {
+		return fmt.Sprintf("%s and %d more", strings.Join(shown, ", "), total-len(shown))
+	}
+	return wording.List(shown)
+}
+
+// wordCodes are the codes in words of the columns in use.
+type wordCodes struct {
+	times map[string]int
+	where []Place
+}
+
+func (p *Pass) codesInWords() wordCodes {
+	w := wordCodes{times: map[string]int{}}
+	for _, col := range p.Table.Columns {
+		if !p.Uses(col) || col == p.Columns.Label || col == p.Columns.Order || col.Count(readers.Code) == 0 {
+			continue
+		}
+		limits := col.Kind() == readers.NumberColumn && tellsLimits(col)
+		for i := range col.Len() {
+			if col.CellKind(i) != readers.Code || contentOf(col, i, limits) == beyondLimit {
+				continue
+			}
+			if cell := col.Cell(i); !cell.Declared {
+				w.times[strings.ToLower(cell.Text)]++
+				w.where = append(w.where, Place{Row: i, Column: col})
+			} else {
+				w.times[cell.Text+", as you said"]++
+			}
+		}
+	}
+	return w
+}
+
+func (w wordCodes) message() string {
+	var named []string
+	for code, n := range w.times {
+		if plain, declared := strings.CutSuffix(code, ", as you said"); declared {
+			named = append(named, fmt.Sprintf("%q (%d, as you said)", plain, n))
+		} else {
+			named = append(named, fmt.Sprintf("%q (%d)", code, n))
+		}
+	}
+	slices.Sort(named)
+	return "taken as missing: " + wording.List(named)
+}
+
+// outcome tells of codes in words alone.
+func (w wordCodes) outcome() Outcome {
+	if len(w.times) == 0 {
 		return sound("no code for a missing value was seen")
 	}
-	var named []string
-	doubtful := false
-	for _, code := range slices.Sorted(maps.Keys(text)) {
-		named = append(named, fmt.Sprintf("%q (%d)", code, text[code]))
-		doubtful = doubtful || code == "-" || code == "–" || code == "nd" || code == "n.d."
+	kinds, doubtful := 0, false
+	for code := range w.times {
+		if strings.HasSuffix(code, ", as you said") {
+			continue
+		}
+		kinds++
+		switch code {
+		case "-", "–", "nd", "n.d.", "?", "none":
+			doubtful = true
+		}
 	}
-	message := "taken as missing: " + wording.List(named)
-	if len(text) == 1 && !doubtful {
-		return sound(message)
+	o := sound(w.message())
+	o.Where = w.where
+	if kinds < 2 && !doubtful {
+		return o
 	}
-	o := breach(message)
+	o.Answer = Breach
 	if doubtful {
-		o.Message += "; a dash or nd may also mean zero, or below a limit"
+		o.Message += "; a dash, nd, none or a question mark may also mean zero, below a limit, or a doubt"
 	} else {
 		o.Message += "; two codes may have meant two things"
 	}
 	o.Advice = "write one code, or leave the cell empty, wherever a value is missing"
-	for _, col := range p.Asked() {
-		for i := range col.Len() {
-			if col.Cell(i).Kind == readers.Code {
-				o.Where = append(o.Where, Place{Row: i, Column: col})
-			}
-		}
-	}
 	return o
 }
 
-// suspectedCodes lists the values of a column that may be codes.
-func suspectedCodes(col *readers.Column) []float64 {
-	count := map[float64]int{}
-	for i := range col.Len() {
-		if v, ok := col.Number(i); ok {
-			count[v]++
+// suspectedCodes lists the numbers of a column that may be codes.
+func suspectedCodes(f *Profile, set bool) []float64 {
+	if len(f.Sorted) == 0 {
+		return nil
+	}
+	values, times := f.Levels()
+	var bulk []float64
+	for k, v := range values {
+		if !habitualCode(v, times[k], set) {
+			for range times[k] {
+				bulk = append(bulk, v)
+			}
 		}
 	}
-	least, greatest := math.Inf(1), math.Inf(-1)
-	for v, n := range count {
-		if !habitualCode(v, n) {
-			least, greatest = min(least, v), max(greatest, v)
-		}
+	if len(bulk) < 3 {
+		return nil
+	}
+	low, high := numeric.Quantile(bulk, 0.02), numeric.Quantile(bulk, 0.98)
+	if low == high {
+		low, high = bulk[0], bulk[len(bulk)-1]
 	}
 	var codes []float64
-	for v, n := range count {
-		if !habitualCode(v, n) || least > greatest {
+	for k, v := range values {
+		if !habitualCode(v, times[k], set) {
 			continue
 		}
-		gap := max(least-v, v-greatest)
-		if gap > farGap(v, n)*(greatest-least) && gap > 0 {
+		gap := max(low-v, v-high)
+		impossible := v < 0 && bulk[0] >= 0
+		// A code that nothing but its distance speaks for must lie beyond even the
+		// farthest of the others: long tails come through 99 and 77 too.
+		farthest := max(bulk[0]-v, v-bulk[len(bulk)-1])
+		switch {
+		case times[k] == 1 && !impossible && farthest <= 0.5*(high-low),
+			!allOf(v, '9') && v != 0 && v != -1 && farthest <= 0:
+			continue
+		}
+		if enough, asked := farGap(v, times[k], impossible); asked && gap > 0 && gap > enough*(high-low) {
 			codes = append(codes, v)
 		}
 	}
-	slices.Sort(codes)
 	return codes
 }
 
 // habitualCode tells values that people write for a missing one. Whole numbers
 // that are no habit count only when they are repeated.
-func habitualCode(v float64, times int) bool {
-	if allNines(v) {
-		return true
-	}
-	return times > 1 && v == math.Trunc(v) && (v == 0 || v == -1 || math.Abs(v) >= 10)
-}
-
-// farGap is how far beyond all other values, in ranges of these, a code lies.
-func farGap(v float64, times int) float64 {
+func habitualCode(v float64, times int, set bool) bool {
 	switch {
-	case allNines(v) && times == 1:
-		return 1
-	case allNines(v), v == 0, v == -1:
-		return 0.5
-	default:
-		return 2
+	case v == 0:
+		return times > 1 && !set
+	case v == -1 || allOf(v, '9'):
+		return true
+	case times > 1 && v == math.Trunc(v):
+		return math.Abs(v) >= 10 && !set || allOf(v, '8') || allOf(v, '7')
 	}
+	return false
 }
 
-// allNines tells -9, 99, -999, 99.9 and the like.
-func allNines(v float64) bool {
-	digits := strings.NewReplacer("-", "", ".", "").Replace(wording.Number(v))
-	return strings.Trim(digits, "9") == "" && (len(digits) > 1 || v < 0)
+// farGap is how far beyond the bulk, in widths of it, a code lies; asked is
+// false when it would have to be repeated or impossible.
+func farGap(v float64, times int, impossible bool) (gap float64, asked bool) {
+	repeated := times > 1
+	switch {
+	case allOf(v, '9') && (repeated || impossible):
+		return 0.25, true
+	case (allOf(v, '8') || allOf(v, '7')) && repeated:
+		return 1, true
+	case allOf(v, '9'):
+		return 1, true
+	case v == 0 || v == -1:
+		return 0.5, repeated || impossible
+	}
+	return 2, repeated
+}
+
+// allOf tells -9, 99, -999, 99.9 and the like: one digit over and over, and
+// more than a single one unless it is negative.
+func allOf(v float64, digit byte) bool {
+	if k := v * 1000; k != math.Trunc(k) {
+		return false // no code has more decimals, and most measurements end here
+	}
+	n := 0
+	for _, c := range []byte(wording.Number(v)) {
+		switch c {
+		case digit:
+			n++
+		case '-', '.':
+		default:
+			return false
+		}
+	}
+	return n > 1 || n == 1 && v < 0
 }

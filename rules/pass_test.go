@@ -60,10 +60,17 @@ func passOf(t *testing.T, s *sheet, roles model.Roles, missing ...string) *Pass 
 	if err != nil {
 		t.Fatal(err)
 	}
+	return passOn(t, table, roles)
+}
+
+// passOn fits the model of the roles to a table.
+func passOn(t *testing.T, table *readers.Table, roles model.Roles) *Pass {
+	t.Helper()
 	p := &Pass{Table: table, Settings: testSettings()}
 	if !roles.Named() {
 		return p
 	}
+	var err error
 	if p.Columns, err = model.Resolve(table, roles); err != nil {
 		t.Fatal(err)
 	}
@@ -96,6 +103,7 @@ func ask(t *testing.T, r *Rule, p *Pass) Outcome {
 				j.Strong = m
 			}
 		}
+		j.Closed = p.Fit.N() > LargestSimulated
 		j.P = min(1, float64(len(chance.Members))*j.Strongest().P)
 		j.PJoint = j.P
 		j.BelowFloor = j.P <= p.Settings.FalseAlarm && chance.Floor.Below()
@@ -126,6 +134,8 @@ func expect(t *testing.T, p *Pass, o Outcome, answer Answer, words string, cells
 	var got []string
 	for _, w := range o.Where {
 		switch {
+		case w.Stray > 0:
+			got = append(got, fmt.Sprint(w.Stray))
 		case w.Row < 0:
 			got = append(got, w.Column.Title())
 		case w.Column == nil:
@@ -138,3 +148,32 @@ func expect(t *testing.T, p *Pass, o Outcome, answer Answer, words string, cells
 		t.Errorf("points at %v, want %v", got, cells)
 	}
 }
+
+// drawn makes a table of n rows in one line, x evenly on 0 to 10, with errors
+// by the given function of row and normal deviate.
+func drawn(n int, seed uint64, errorAt func(i int, z float64) float64) *sheet {
+	random := rand.New(rand.NewPCG(seed, 3))
+	s := &sheet{header: []string{"no", "x", "y"}}
+	for i := range n {
+		x := 10 * float64((i*7)%n) / float64(n-1)
+		s.add(i+1, fmt.Sprintf("%.4f", x), fmt.Sprintf("%.6f", 1+x+errorAt(i, random.NormFloat64())))
+	}
+	return s
+}
+
+var plainRoles = model.Roles{Response: "y", Predictors: []string{"x"}}
+
+// meansDrawn makes a table of n rows in two groups, without a predictor.
+func meansDrawn(n int, seed uint64, errorAt func(i int, z float64) float64) *sheet {
+	random := rand.New(rand.NewPCG(seed, 5))
+	s := &sheet{header: []string{"g", "y"}}
+	for i := range n {
+		s.add([]string{"a", "b"}[i%2], fmt.Sprintf("%.6f", float64(3+i%2)+errorAt(i, random.NormFloat64())))
+	}
+	return s
+}
+
+var meansRoles = model.Roles{Response: "y", Group: "g"}
+
+// normal leaves the deviate as it is.
+func normal(_ int, z float64) float64 { return z }

@@ -36,3 +36,21 @@ func TestRepeatedSubjects(t *testing.T) {
 	p := passOf(t, drawn(20, 13, func(_ int, z float64) float64 { return z }), plainRoles)
 	expect(t, p, ask(t, RepeatedSubjects, p), NotAsked, "--subject")
 }
+
+// TestRepeatedSubjectsBelowItsFloor: a correlation that hundreds of subjects
+// make certain and that matters to no interval.
+func TestRepeatedSubjectsBelowItsFloor(t *testing.T) {
+	random := rand.New(rand.NewPCG(8, 8))
+	s := &sheet{header: []string{"pot", "x", "y"}}
+	for pot := range 300 {
+		shared := 0.17 * random.NormFloat64()
+		for range 20 {
+			x := 10 * random.Float64()
+			s.add(fmt.Sprintf("p%d", pot), fmt.Sprintf("%.4f", x), fmt.Sprintf("%.4f", x+shared+random.NormFloat64()))
+		}
+	}
+	roles := plainRoles
+	roles.Subject = "pot"
+	p := passOf(t, s, roles)
+	expect(t, p, ask(t, RepeatedSubjects, p), Sound, "detectable, but below what matters: an intraclass correlation of 0.0")
+}

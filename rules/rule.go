@@ -88,6 +88,7 @@ type Settings struct {
 type Pass struct {
 	Table    *readers.Table
 	Columns  model.Columns
+	Profiles Profiles      // kept between rules; nil works too, and is slower
 	Design   *model.Design // nil when the table is only screened
 	Fit      *model.Fit    // nil when there is none; then NoFit says why
 	NoFit    *model.NoFit
@@ -182,6 +183,7 @@ type Measure struct {
 type Place struct {
 	Row    int // index in the table
 	Column *readers.Column
+	Stray  int // row of the file that is no record of the table, and then all there is; else 0
 }
 
 // Question names one of the answers.

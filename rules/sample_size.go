@@ -137,7 +137,9 @@ func (p *Pass) lacking(why func(g int, s model.Estimate) string) (Outcome, bool)
 			continue
 		}
 		said = append(said, reason)
-		o.Denies = append(o.Denies, Question{Group: s.Group})
+		q := Question{Group: s.Group}
+		o.Denies = append(o.Denies, q)
+		o.Limits = append(o.Limits, Limit{Of: &q, Sentence: wording.Stop(reason)})
 		if d.HasGroup() {
 			for _, i := range d.Members(g) {
 				o.Where = append(o.Where, Place{Row: d.Rows[i], Column: p.Columns.Group})

@@ -181,8 +181,16 @@ func newNull(d *drawer, observed []float64, replicates [][]float64) *Null {
 	return n
 }
 
-// exceeding is the share of the sorted values that are at least v.
+// tied is how nearly two statistics must agree to count as equal. One that is
+// the same whatever the responses differs by rounding only, and must not be told
+// apart by it.
+const tied = 1e-10
+
+// exceeding is the share of the sorted values that are at least v; ties count.
 func exceeding(sorted []float64, v float64) float64 {
+	if !math.IsInf(v, 0) {
+		v -= tied * math.Abs(v)
+	}
 	at, _ := slices.BinarySearch(sorted, v)
 	return float64(len(sorted)-at) / float64(len(sorted))
 }

@@ -39,9 +39,19 @@ func (d *drawer) observed() []float64 {
 	s.Changed()
 	row := make([]float64, d.family.members())
 	for m, statistic := range d.statistics() {
-		row[m] = statistic(s)
+		row[m] = orNothing(statistic(s))
 	}
 	return row
+}
+
+// orNothing takes a statistic that is not defined, as where all residuals have
+// one size, for one that shows nothing: statistics are large when something is
+// wrong, and none is below 0.
+func orNothing(statistic float64) float64 {
+	if math.IsNaN(statistic) {
+		return 0
+	}
+	return statistic
 }
 
 // statistics makes the members' functions for one goroutine.
@@ -76,7 +86,7 @@ func (d *drawer) draw(stream string, tables int, newErrors func() func(*rand.Ran
 	}
 	d.each(stream, tables, newErrors, func(w *worker, r int) {
 		for m, statistic := range w.statistics {
-			rows[r][m] = statistic(w.sample)
+			rows[r][m] = orNothing(statistic(w.sample))
 		}
 	})
 	return rows

@@ -7,6 +7,7 @@ import (
 	"io"
 	"strconv"
 	"strings"
+	"sync"
 
 	"footing/audit"
 	"footing/audit/figure"
@@ -23,15 +24,24 @@ type HTMLOptions struct {
 //go:embed page.html
 var pageText string
 
+var htmlForm = &Form{
+	Name: "html", Extensions: []string{".html", ".htm"}, Marks: []string{"<!doctype html>\n<!-- " + mark}, Draws: true,
+	Write: func(w io.Writer, r *audit.Result, o Options) error {
+		return HTML(w, r, HTMLOptions{Version: o.Version, Command: o.Text.Command})
+	},
+}
+
 // pageTemplate shows text from the data with t, which makes visible what would
 // act on a display; what would act on a parser html/template escapes.
-var pageTemplate = template.Must(template.New("page").Funcs(template.FuncMap{"t": wording.Printable}).Parse(pageText))
+var pageTemplate = sync.OnceValue(func() *template.Template {
+	return template.Must(template.New("page").Funcs(template.FuncMap{"t": wording.Printable}).Parse(pageText))
+})
 
 // HTML writes the result as one page that needs nothing else: no script, nothing
 // fetched. With Result.Drawing it has the figures.
 func HTML(w io.Writer, r *audit.Result, o HTMLOptions) error {
 	var b strings.Builder
-	if err := pageTemplate.Execute(&b, newWebPage(r, o)); err != nil {
+	if err := pageTemplate().Execute(&b, newWebPage(r, o)); err != nil {
 		return err
 	}
 	// The last word on what acts on a display, wherever it came from; the page's
@@ -46,6 +56,7 @@ func HTML(w io.Writer, r *audit.Result, o HTMLOptions) error {
 
 // webPage is what the template says, in its order.
 type webPage struct {
+	Mark                     template.HTML // html/template drops comments of its own text
 	Version, Command, SHA256 string
 
 	File, Sheet, Read, Model string
@@ -114,6 +125,7 @@ type webRule struct {
 
 func newWebPage(r *audit.Result, o HTMLOptions) *webPage {
 	p := &webPage{
+		Mark:    "<!-- " + audit.Format + " html -->",
 		Version: o.Version, Command: o.Command, SHA256: r.Input.SHA256,
 		File: shortened(r.Input.File), Sheet: text(r.Input.Sheet), Screened: r.Model == nil, Suggested: r.Suggested,
 		Grade: strings.ToUpper(string(r.Verdict.State)), GradeTone: gradeTone(r.Verdict.State), Summary: wording.Sentence(r.Verdict.Summary),
@@ -322,7 +334,7 @@ func (p *webPage) fillFindings(r *audit.Result) {
 		}
 		w.Figures = beside[f.Rule]
 		switch {
-		case isOpen(f) || f.ConsequenceOf != nil:
+		case f.IsOpen() || f.ConsequenceOf != nil:
 			p.Findings = append(p.Findings, w)
 		case f.State == audit.Skip:
 			p.Skips = append(p.Skips, w)
@@ -353,7 +365,7 @@ func newWebFinding(f audit.Finding) webFinding {
 		Rule: f.Rule, State: string(f.State), Sign: sign, Tone: string(f.State), Message: f.Message,
 		ConsequenceOf: text(f.ConsequenceOf), Waived: text(f.Waived),
 	}
-	if !isOpen(f) {
+	if !f.IsOpen() {
 		return w
 	}
 	for k, place := range f.Where {
@@ -391,7 +403,7 @@ func (p *webPage) collectRemedies(f audit.Finding) {
 	for _, remedy := range f.Remedies {
 		t := webTrial{Rule: f.Rule, Text: remedy.Text, Source: text(remedy.Source), Why: text(remedy.Why)}
 		switch {
-		case !remedy.Tried && (isOpen(f) || f.ConsequenceOf != nil):
+		case !remedy.Tried && (f.IsOpen() || f.ConsequenceOf != nil):
 			p.Untried = append(p.Untried, t)
 		case remedy.Tried:
 			t.Answers, t.Judged = triedFigures(remedy), "hold"

@@ -103,7 +103,10 @@ func (w *schemaWalk) structure(name string, of reflect.Type, n *node) {
 			continue // for figures only; --per-row has what JSON tells of rows
 		}
 		key, options, _ := strings.Cut(f.Tag.Get("json"), ",")
-		if key == "" || key == "-" {
+		if key == "-" {
+			continue // for other forms of report only
+		}
+		if key == "" {
 			w.t.Errorf("%s: the field %s has no name in JSON", name, f.Name)
 			continue
 		}

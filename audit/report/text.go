@@ -19,7 +19,20 @@ type TextOptions struct {
 	Height  int    // lines of the screen; a longer report repeats its verdict
 	Color   bool   // paint states
 	Verbose bool   // list every rule, every place, every row set aside
+	Sketch  bool   // draw residuals against fitted values, from the result's rows
 	Command string // how this audit was called
+}
+
+var textForm = &Form{
+	Name: "text", Extensions: []string{".txt"}, Marks: []string{mark},
+	Write: func(w io.Writer, r *audit.Result, o Options) error {
+		if o.File {
+			if _, err := io.WriteString(w, audit.Format+" text\n\n"); err != nil {
+				return err
+			}
+		}
+		return Text(w, r, o.Text)
+	},
 }
 
 // places is how many addresses a finding shows unless all are asked for.
@@ -38,6 +51,9 @@ func Text(w io.Writer, r *audit.Result, o TextOptions) error {
 		writeSuggestion(p, r)
 	}
 	writeFindings(p, r, o)
+	if o.Sketch {
+		writeSketch(p, r)
+	}
 	writeCounts(p, r, o)
 	if o.Height > 0 && p.lines > o.Height {
 		p.blank()
@@ -50,18 +66,8 @@ func Text(w io.Writer, r *audit.Result, o TextOptions) error {
 // writeRead says in two lines what was read and what is used.
 func writeRead(p *page, r *audit.Result, o TextOptions) {
 	in := r.Input
-	file := in.File
-	if in.Sheet != nil {
-		file += ", sheet " + *in.Sheet
-	}
-	text := fmt.Sprintf("%s in %s", wording.Count(in.Rows, "row"), wording.Count(len(in.Columns), "column"))
-	if in.HeaderRow > 1 {
-		text += fmt.Sprintf(" under a header in row %d", in.HeaderRow)
-	}
-	if r.Model != nil {
-		text += fmt.Sprintf("; %d used", r.Model.RowsUsed)
-	}
-	p.sayIndented(file+": ", strong, 2, text+".")
+	file, text := readWords(r)
+	p.sayIndented(file+": ", strong, 2, text)
 	if r.Model != nil {
 		p.say("  ", plain, wording.Stop(modelWords(r)))
 		writeSetAside(p, r, o)
@@ -130,10 +136,9 @@ func writeSetAside(p *page, r *audit.Result, o TextOptions) {
 }
 
 func writeVerdict(p *page, r *audit.Result) {
-	word := strings.ToUpper(string(r.Verdict.State))
-	p.sayIndented(word+": ", append(gradeInk(r.Verdict.State), strong...), 2, r.Verdict.Summary+".")
+	p.sayIndented(grade(r)+": ", append(gradeInk(r.Verdict.State), strong...), 2, r.Verdict.Summary+".")
 	if r.Model != nil {
-		p.say("  ", plain, "These rows and this line only; nothing is said of cause or confounding.")
+		p.say("  ", plain, scope)
 	}
 }
 
@@ -218,7 +223,7 @@ func writeSuggestion(p *page, r *audit.Result) {
 func writeFindings(p *page, r *audit.Result, o TextOptions) {
 	shown := false
 	for k, f := range r.Findings {
-		if !isOpen(f) && !o.Verbose {
+		if !f.IsOpen() && !o.Verbose {
 			continue
 		}
 		if !shown {
@@ -238,12 +243,6 @@ func writeFindings(p *page, r *audit.Result, o TextOptions) {
 			writeConsequences(p, f, r.Findings[k+1:])
 		}
 	}
-}
-
-// isOpen tells findings that ask for a decision; a pass that is thin only for
-// want of rows is told with the verdict.
-func isOpen(f audit.Finding) bool {
-	return f.State == audit.Stop || f.State == audit.Warn || (f.State == audit.Thin && !f.ByPower)
 }
 
 // margin is the indent of what is said below a finding.
@@ -275,7 +274,7 @@ func writeFinding(p *page, f audit.Finding, o TextOptions) {
 		text += " This follows from " + *f.ConsequenceOf + "."
 	}
 	p.sayIndented(indent+lead, i, len(indent+margin), text)
-	if !isOpen(f) {
+	if !f.IsOpen() {
 		return
 	}
 	if where := whereWords(f, o); where != "" {
@@ -304,19 +303,7 @@ func anyTried(remedies []audit.Remedy) bool {
 }
 
 func whereWords(f audit.Finding, o TextOptions) string {
-	var all []string
-	for _, w := range f.Where {
-		switch {
-		case w.Cell != nil && w.Value != nil && *w.Value != "":
-			all = append(all, fmt.Sprintf("%s (%s)", *w.Cell, *w.Value))
-		case w.Cell != nil:
-			all = append(all, *w.Cell)
-		case w.Row != nil:
-			all = append(all, fmt.Sprintf("row %d", *w.Row))
-		case w.Column != nil:
-			all = append(all, "column "+*w.Column)
-		}
-	}
+	all := addresses(f.Where)
 	if o.Verbose {
 		return strings.Join(all, ", ")
 	}
@@ -358,23 +345,8 @@ func triedWords(r audit.Remedy) string {
 }
 
 func writeCounts(p *page, r *audit.Result, o TextOptions) {
-	passed, skipped := 0, 0
-	for _, f := range r.Findings {
-		switch f.State {
-		case audit.Pass:
-			if !f.OnlyLimits {
-				passed++
-			}
-		case audit.Skip:
-			skipped++
-		}
-	}
 	p.blank()
-	text := fmt.Sprintf("%s passed", wording.Count(passed, "check"))
-	if skipped > 0 {
-		text += fmt.Sprintf(", %d did not apply", skipped)
-	}
-	p.say("", plain, text+".")
+	p.say("", plain, countWords(r))
 	writeCalibration(p, r.Calibration, o)
 	if !o.Verbose && o.Command != "" {
 		p.sayIndented("All checks: ", faint, 2, o.Command+" --verbose")
@@ -394,11 +366,7 @@ func writeCalibration(p *page, c *audit.Calibration, o TextOptions) {
 	if !o.Verbose {
 		return
 	}
-	how := fmt.Sprintf("by %d simulated tables of this design, seed %d", c.Replicates, c.Seed)
-	if c.Method == "formulas" {
-		how = "by formulas, since the table is large"
-	}
-	p.say("", plain, fmt.Sprintf("Sound tables alarm in at most %s of cases (%s; over %s).", wording.Percent(float64(c.FalseAlarm)), how, wording.List(c.Rules)))
+	p.say("", plain, calibrationWords(c))
 }
 
 func gradeInk(g audit.Grade) ink {

@@ -3,14 +3,18 @@ package main
 import (
 	"bytes"
 	"fmt"
+	"io"
 	"math"
 	"os"
+	"path/filepath"
+	"slices"
 	"strings"
 
 	"github.com/spf13/cobra"
 	"golang.org/x/term"
 
 	"footing/audit"
+	"footing/audit/figure"
 	"footing/audit/report"
 	"footing/readers"
 	"footing/rules"
@@ -34,6 +38,11 @@ type auditFlags struct {
 	replicates int
 
 	format  string
+	outputs []string
+	marked  string
+	figures string
+	force   bool
+	sketch  bool
 	perRow  bool
 	color   string
 	width   int
@@ -60,7 +69,14 @@ func newAudit() *cobra.Command {
 		},
 	}
 	f.add(cmd)
+	f.complete(cmd)
 	return cmd
+}
+
+// listedForms names the forms of a report in a sentence.
+func listedForms() string {
+	names := report.FormNames()
+	return strings.Join(names[:len(names)-1], ", ") + " or " + names[len(names)-1]
 }
 
 // oneFile asks for exactly one file, in a sentence.
@@ -106,7 +122,12 @@ func (f *auditFlags) add(cmd *cobra.Command) {
 	flags.Uint64Var(&f.seed, "seed", 1, "seed of what is simulated")
 	flags.IntVar(&f.replicates, "replicates", 0, "tables simulated for the p-values (default: by the size of the table)")
 
-	flags.StringVar(&f.format, "format", "text", "form of the report: text or json")
+	flags.StringVar(&f.format, "format", "text", "form of the report: "+listedForms())
+	flags.StringArrayVar(&f.outputs, "output", nil, "write the report to FILE too, in the form that its extension names, or FORMAT=FILE (repeatable)")
+	flags.StringVar(&f.figures, "figures", "", "write the figures of the HTML report to a folder, as SVG")
+	flags.StringVar(&f.marked, "marked", "", "write a workbook with the named cells marked to FILE.xlsx")
+	flags.BoolVar(&f.force, "force", false, "replace files that footing did not write")
+	flags.BoolVar(&f.sketch, "sketch", false, "draw residuals against fitted values in the text report")
 	flags.BoolVar(&f.perRow, "per-row", false, "add row diagnostics to JSON")
 	flags.StringVar(&f.color, "color", "auto", "colour: auto, always or never")
 	flags.IntVar(&f.width, "width", 0, "columns of the text report (default: the terminal's, or 80)")
@@ -120,7 +141,12 @@ func (f *auditFlags) run(cmd *cobra.Command, file string) error {
 	if err != nil {
 		return err
 	}
-	t, err := f.read(cmd, file)
+	out, err := f.plan(cmd, file)
+	if err != nil {
+		return err
+	}
+	s := &source{file: file, keep: f.readsAgain(out)}
+	t, err := s.table(cmd, f.reading)
 	if err != nil {
 		return err
 	}
@@ -132,12 +158,12 @@ func (f *auditFlags) run(cmd *cobra.Command, file string) error {
 			StatedSlope: given(cmd, "stated-slope", f.stated), PredictorError: given(cmd, "predictor-error", f.xError),
 			Seed: f.seed, Replicates: f.replicates,
 		},
-		Off: off, PerRow: f.perRow, Command: command + f.readingArgs(),
+		Off: off, PerRow: f.perRow || f.sketch, Command: command + f.readingArgs(), Draw: f.draws(out),
 	})
 	if err != nil {
 		return err
 	}
-	if err := f.write(cmd, r); err != nil {
+	if err := f.write(cmd, out, s, r); err != nil {
 		return err
 	}
 	if f.fails(r) {
@@ -154,18 +180,10 @@ func given(cmd *cobra.Command, flag string, value float64) float64 {
 	return value
 }
 
-// read opens the file, or standard input for -.
-func (f *auditFlags) read(cmd *cobra.Command, file string) (*readers.Table, error) {
-	if file == "-" {
-		return readers.Read("-", cmd.InOrStdin(), f.reading)
-	}
-	return readers.Open(file, f.reading)
-}
-
 // check refuses flag values that mean nothing and gives the rules that are
 // switched off.
 func (f *auditFlags) check() (off []string, err error) {
-	if err := oneOf("--format", f.format, "text", "json"); err != nil {
+	if err := oneOf("--format", f.format, report.FormNames()...); err != nil {
 		return nil, err
 	}
 	if err := oneOf("--color", f.color, "auto", "always", "never"); err != nil {
@@ -225,26 +243,114 @@ func oneOf(flag, value string, allowed ...string) error {
 	return fmt.Errorf("%s is %q; it can be %s or %s", flag, value, strings.Join(allowed[:len(allowed)-1], ", "), allowed[len(allowed)-1])
 }
 
-// write writes the report in one piece, so that a fault leaves none behind.
-func (f *auditFlags) write(cmd *cobra.Command, r *audit.Result) error {
-	var whole bytes.Buffer
-	var err error
-	if f.format == "json" {
-		err = report.JSON(&whole, r)
-	} else {
-		width, height := screen()
-		if f.width != 0 {
-			width = f.width
-		}
-		err = report.Text(&whole, r, report.TextOptions{
-			Width: width, Height: height, Color: f.paints(), Verbose: f.verbose, Command: "footing " + quotedArgs(os.Args[1:]),
-		})
+// plan checks every file that is to be written, before anything is read.
+func (f *auditFlags) plan(cmd *cobra.Command, file string) (*outputs, error) {
+	out := &outputs{force: f.force, input: inputOf(cmd, file)}
+	var given *report.Form
+	if cmd.Flags().Changed("format") {
+		given = report.FormNamed(f.format)
 	}
-	if err != nil || f.quiet {
+	for _, value := range f.outputs {
+		form, path, err := parseOutput(value, given)
+		if err != nil {
+			return nil, err
+		}
+		if err := out.add("--output", path, form); err != nil {
+			return nil, err
+		}
+	}
+	if cmd.Flags().Changed("marked") {
+		if !strings.EqualFold(filepath.Ext(f.marked), ".xlsx") {
+			return nil, fmt.Errorf("--marked is %q; it is a workbook, so give a name that ends in .xlsx", f.marked)
+		}
+		if err := out.add("--marked", f.marked, nil); err != nil {
+			return nil, err
+		}
+	}
+	return out, nil
+}
+
+// readsAgain reports whether the input is needed once more after the audit: to
+// mark its cells, or to find the characters of a field.
+func (f *auditFlags) readsAgain(out *outputs) bool {
+	again := f.marked != "" || f.format == "sarif"
+	for _, o := range out.taken {
+		again = again || o.form != nil && o.form.Name == "sarif"
+	}
+	return again
+}
+
+// draws reports whether some output has figures.
+func (f *auditFlags) draws(out *outputs) bool {
+	draws := f.figures != "" || (!f.quiet && report.FormNamed(f.format).Draws)
+	for _, o := range out.taken {
+		draws = draws || o.form != nil && o.form.Draws
+	}
+	return draws
+}
+
+// write makes every report, puts the files in their places and then prints, so
+// that a fault leaves nothing behind.
+func (f *auditFlags) write(cmd *cobra.Command, out *outputs, s *source, r *audit.Result) error {
+	if f.figures != "" {
+		for _, drawn := range figure.All(r) {
+			if err := out.addFigure(f.figures, drawn); err != nil {
+				return err
+			}
+		}
+	}
+	for _, o := range out.taken {
+		if o.text != nil {
+			continue // a figure
+		}
+		var whole bytes.Buffer
+		var err error
+		if o.form == nil {
+			err = s.mark(&whole, r)
+		} else {
+			err = f.report(&whole, o.form, true, s, r)
+		}
+		if err != nil {
+			return err
+		}
+		o.text = whole.Bytes()
+	}
+	var printed bytes.Buffer
+	if !f.quiet {
+		if err := f.report(&printed, report.FormNamed(f.format), false, s, r); err != nil {
+			return err
+		}
+	}
+	if err := out.commit(); err != nil {
 		return err
 	}
-	_, err = cmd.OutOrStdout().Write(whole.Bytes())
+	_, err := cmd.OutOrStdout().Write(printed.Bytes())
 	return err
+}
+
+// report writes one form, to a file or for standard output.
+func (f *auditFlags) report(w io.Writer, form *report.Form, toFile bool, s *source, r *audit.Result) error {
+	text := report.TextOptions{Width: 80, Verbose: f.verbose, Sketch: f.sketch, Command: "footing " + quotedArgs(os.Args[1:])}
+	if !toFile {
+		text.Width, text.Height = screen()
+		text.Color = f.paints()
+	}
+	if f.width != 0 {
+		text.Width = f.width
+	}
+	o := report.Options{Text: text, PerRow: f.perRow, FailOn: f.failOn, Version: version, File: toFile}
+	var lost error
+	if s.keep {
+		o.Spans = func(places []readers.Pos) map[readers.Pos]readers.Span {
+			spans, err := s.spans(places)
+			lost = err
+			return spans
+		}
+	}
+	if err := form.Write(w, r, o); err != nil {
+		return err
+	}
+	return lost
 }
 
 // widest is the longest line that is still read with ease.
@@ -273,14 +379,7 @@ func (f *auditFlags) paints() bool {
 
 // fails reports whether a finding reaches --fail-on.
 func (f *auditFlags) fails(r *audit.Result) bool {
-	rank := map[audit.State]int{audit.Thin: 1, audit.Warn: 2, audit.Stop: 3}
-	least, counts := rank[audit.State(f.failOn)], f.failOn != "never"
-	for _, finding := range r.Findings {
-		if counts && finding.Waived == nil && rank[finding.State] >= least {
-			return true
-		}
-	}
-	return false
+	return slices.ContainsFunc(r.Findings, func(finding audit.Finding) bool { return finding.Fails(f.failOn) })
 }
 
 // readingArgs repeats the reading flags for the suggested command.

@@ -31,6 +31,7 @@ type Design struct {
 	CommonSlope bool
 	Added       []Term // columns that a remedy added
 
+	changes   []Change                    // numbers that a remedy put in place of the table's
 	scale     string                      // "log" when the response was transformed
 	transform func(v []float64) []float64 // of the rows, by a remedy; nil for none
 	lostDF    int                         // degrees of freedom that a remedy used besides its columns
@@ -154,30 +155,34 @@ func (d *Design) numbers(col *readers.Column) []float64 {
 		}
 		v[k] = x
 	}
+	for _, c := range d.changes {
+		if k, used := slices.BinarySearch(d.Rows, c.Row); used && c.Column == col {
+			v[k] = c.Value
+		}
+	}
 	return v
 }
 
 // codes gives each used row the position of its label among the labels in
 // byte order, -1 where there is none.
 func (d *Design) codes(col *readers.Column) (code []int, levels []string) {
-	position := map[string]int{}
+	names, of := col.Levels()
+	position := make([]int, len(names))
 	for _, i := range d.Rows {
-		if label, ok := col.Label(i); ok {
-			position[label] = 0
+		if of[i] >= 0 && position[of[i]] == 0 {
+			position[of[i]] = 1
+			levels = append(levels, names[of[i]])
 		}
 	}
-	for label := range position {
-		levels = append(levels, label)
-	}
 	slices.Sort(levels)
-	for k, label := range levels {
-		position[label] = k
+	for k, name := range names {
+		position[k], _ = slices.BinarySearch(levels, name)
 	}
 	code = make([]int, len(d.Rows))
 	for k, i := range d.Rows {
 		code[k] = -1
-		if label, ok := col.Label(i); ok {
-			code[k] = position[label]
+		if of[i] >= 0 {
+			code[k] = position[of[i]]
 		}
 	}
 	return code, levels

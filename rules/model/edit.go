@@ -16,8 +16,12 @@ func (d *Design) Without(rows []int, reason string) *Design {
 	out := *d
 	out.SetAside = slices.Clone(d.SetAside)
 	var keep []int
+	leave := make([]bool, len(d.Rows))
+	for _, k := range rows {
+		leave[k] = true
+	}
 	for k, i := range d.Rows {
-		if slices.Contains(rows, k) {
+		if leave[k] {
 			out.SetAside = append(out.SetAside, SetAside{Row: i, Reason: reason})
 			continue
 		}
@@ -114,15 +118,33 @@ func (d *Design) Relabelled(to map[string]string) *Design {
 	return &out
 }
 
-// RowsAt lists the used rows that stand at the given rows of the table.
+// RowsAt lists the used rows that stand at the given rows of the table, upwards
+// and each once.
 func (d *Design) RowsAt(table []int) []int {
 	var rows []int
-	for k, i := range d.Rows {
-		if slices.Contains(table, i) {
+	for _, i := range table {
+		if k, used := slices.BinarySearch(d.Rows, i); used {
 			rows = append(rows, k)
 		}
 	}
-	return rows
+	slices.Sort(rows)
+	return slices.Compact(rows)
+}
+
+// Change is another number for one cell.
+type Change struct {
+	Row    int // index in the table
+	Column *readers.Column
+	Value  float64
+}
+
+// Changed returns the design with other numbers in some cells; cells that are
+// not in use are passed over. The receiver and the table are not changed.
+func (d *Design) Changed(changes []Change) *Design {
+	out := *d
+	out.changes = append(slices.Clone(d.changes), changes...)
+	out.fill()
+	return &out
 }
 
 // Place is the address of a used row's cell in a column.

@@ -65,6 +65,7 @@ type Start struct {
 type Target struct {
 	Rows   []int             // used rows, as indices of the design
 	Labels map[string]string // group labels to be replaced
+	Values []model.Change    // numbers to be put in place of those of the table
 
 	Reliability map[string]float64 // of the predictor, by group
 	LeaveOut    int                // position of a further predictor or covariate

@@ -28,6 +28,23 @@ func Printable(s string) string {
 	return b.String()
 }
 
+// EscapeJSON writes the characters that Printable makes visible as JSON escapes,
+// in text that is JSON already: there they can only stand within strings, line
+// ends apart.
+func EscapeJSON(text []byte) []byte {
+	var out []byte
+	for len(text) > 0 {
+		r, n := utf8.DecodeRune(text)
+		if hidden(r) && r != '\n' && !(r == utf8.RuneError && n == 1) {
+			out = fmt.Appendf(out, `\u%04x`, r)
+		} else {
+			out = append(out, text[:n]...)
+		}
+		text = text[n:]
+	}
+	return out
+}
+
 // hidden tells characters that act on a display instead of showing on it.
 func hidden(r rune) bool {
 	switch {
