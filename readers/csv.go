@@ -11,7 +11,6 @@ import (
 
 // dialect is how one text file is written.
 type dialect struct {
-	encoding  encodingName
 	delimiter byte // 0 when each line is one field
 	bars      bool
 	sepLine   bool // the first line is sep=;

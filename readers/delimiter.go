@@ -9,7 +9,7 @@ import (
 
 // chooseDialect decides how a file is written from its first part.
 func chooseDialect(src source, sv *survey, opt Options, limits Limits) (dialect, []string, error) {
-	d := dialect{encoding: sv.encoding, decimal: '.'}
+	d := dialect{decimal: '.'}
 	r, err := src.text(sv)
 	if err != nil {
 		return d, nil, err
