@@ -30,7 +30,7 @@ func differs(a model.Answers) bool { return a.Difference.P <= 0.05 }
 
 // unequalScatter measures what the answers are worth where the scatter varies.
 func (s *study) unequalScatter(*testing.T) {
-	tables := s.pick(20000, 1000)
+	tables := s.pick(20000, 300)
 	r := rows{}
 	for g, size := range []int{20, 40} {
 		for i := range size {
@@ -239,6 +239,7 @@ func (r *rows) pull(by float64) {
 // its model, as a user sees it.
 func (s *study) wholeAudit(*testing.T) {
 	for _, n := range []int{12, 20, 50, 200} {
+		alarms, all := 0.0, 0
 		for _, groups := range []int{1, 2, 4} {
 			for _, kind := range []string{"normal", "discrete", "two predictors", "lognormal", "far row"} {
 				if !s.full && !(n == 20 && groups == 2 && kind != "normal") {
@@ -254,7 +255,11 @@ func (s *study) wholeAudit(*testing.T) {
 					return []bool{modelAlarm(r.result(uint64(table + 1)))}
 				})
 				s.atMost("", "whole audit, sound: warn or stop", name, 5, rate[0], tables)
+				alarms, all = alarms+rate[0]*float64(tables), all+tables
 			}
+		}
+		if all > 0 {
+			s.atMost("", "whole audit, sound: warn or stop", fmt.Sprintf("n %d, all of these", n), 5, alarms/float64(all), all)
 		}
 	}
 }

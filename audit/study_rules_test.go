@@ -183,7 +183,7 @@ func (s *study) influence(t *testing.T) {
 // closed measures the joint rate of p-values from formulas in tables too large
 // to be simulated.
 func (s *study) closed(*testing.T) {
-	tables := s.pick(1500, 200)
+	tables := s.pick(1500, 60)
 	for _, c := range []struct {
 		n      int
 		target float64
@@ -252,7 +252,7 @@ func (s *study) levels(t *testing.T) {
 // rounded measures false alarms where the response is written to a step as wide
 // as its scatter.
 func (s *study) rounded(*testing.T) {
-	tables := s.pick(1500, 200)
+	tables := s.pick(1500, 100)
 	for _, n := range []int{20, 60, 200} {
 		if !s.full && n != 60 {
 			continue

@@ -2,6 +2,7 @@ package rules
 
 import (
 	"fmt"
+	"math"
 	"testing"
 )
 
@@ -49,4 +50,23 @@ func TestInfluenceNeedsRows(t *testing.T) {
 	s.add(3, 5)
 	p := passOf(t, s, plainRoles)
 	expect(t, p, ask(t, Influence, p), NotAsked, "too few rows")
+}
+
+// The simulated statistics of the row rules are the reported ones: what is
+// compared with the null must be what was observed.
+func TestRowStatisticsAreThoseReported(t *testing.T) {
+	p := passOf(t, drawn(30, 4, normal), plainRoles)
+	for _, r := range []*Rule{Outliers, Influence} {
+		chance, reason := r.Chance(p)
+		if chance == nil {
+			t.Fatal(reason)
+		}
+		s := NewSample(p.Fit)
+		copy(s.E, p.Fit.Residual)
+		s.Changed()
+		m := chance.Members[0]
+		if got := m.New()(s); math.Abs(got-m.Test.Value) > 1e-10*m.Test.Value {
+			t.Errorf("%s: simulated %.15g, reported %.15g", r.Name, got, m.Test.Value)
+		}
+	}
 }
