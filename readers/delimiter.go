@@ -151,23 +151,6 @@ func tally(sample []byte, delimiter byte, whole bool, limits Limits) fieldTally 
 	return t
 }
 
-// numberUnderEither tells whether a text is a number with a point or with a comma
-// as decimal sign, and what it says of the sign.
-func numberUnderEither(s string) (signUse, bool) {
-	if c := s[0]; c >= 'A' && c <= 'Z' || c >= 'a' && c <= 'z' {
-		return noSign, false
-	}
-	for _, decimal := range [...]byte{'.', ','} {
-		if w, ok := readNumber(s, decimal); ok && w.look == Wording {
-			return signsOf(s), true
-		}
-		if _, _, ok := readMeasure(s, decimal); ok {
-			return noSign, true
-		}
-	}
-	return noSign, false
-}
-
 // sniffDelimiter chooses among the four: the one under which the most records have
 // the same number of fields, then the one whose columns read as numbers. 0 means
 // that no line has two fields. refusal is set when it can't be told.

@@ -87,19 +87,15 @@ func (g *grid) word(s *store, record int, text []byte, form, marks uint8) {
 		}
 		kind, value := g.classify(string(text))
 		code = s.words.add(text, slot, kind)
-		if kind == Number || kind == declaredCode {
+		if value != (wordValue{}) {
 			s.words.setValue(code, value)
 		}
 	}
-	switch kind := s.words.kind(code); kind {
-	case Number, declaredCode:
-		v := s.words.value(code)
-		g.signs.add(v.signs, record)
+	kind, v := s.words.kind(code), s.words.value(code)
+	g.signs.add(v.signs, record)
+	if kind == Number || kind == declaredCode {
 		s.putNumber(record, uint8(kind)|markWord|marks, form|v.form, v.value, code)
-	case otherSignText:
-		g.signs.add(signsOf(s.words.text(code)), record)
-		s.putWord(record, uint8(kind)|marks&^markText, form, code)
-	default:
+	} else {
 		s.putWord(record, uint8(kind)|marks&^markText, form, code)
 	}
 }
@@ -151,6 +147,7 @@ func (g *grid) classify(text string) (CellKind, wordValue) {
 	if _, ok := readDate(text); ok {
 		return Date, v
 	}
+	v.signs, _ = numberUnderEither(text)
 	switch lookOf(text, g.decimal) {
 	case Measure:
 		return measureText, v
