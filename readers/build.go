@@ -1,6 +1,9 @@
 package readers
 
-import "fmt"
+import (
+	"fmt"
+	"slices"
+)
 
 // build makes the table from the records that were kept.
 func (b *body) build() (*Table, error) {
@@ -198,6 +201,9 @@ func (b *body) holdsNumbers(c, except int) bool {
 // by one and the same unit.
 func (b *body) stripUnits(t *Table, col *Column) {
 	s := col.store
+	if !slices.Contains(s.words.kinds, measureText) {
+		return
+	}
 	measures, filled := 0, 0
 	for i := range t.length {
 		switch class(s.kind(t.at(i))) {

@@ -11,7 +11,6 @@ import (
 
 // dialect is how one text file is written.
 type dialect struct {
-	encoding  encodingName
 	delimiter byte // 0 when each line is one field
 	bars      bool
 	sepLine   bool // the first line is sep=;
@@ -302,6 +301,9 @@ func (l *textLoader) notes(s *scanner) []string {
 	}
 	if l.invisible > 0 {
 		out = append(out, fmt.Sprintf("%s an invisible mark (U+FEFF or U+200B), the first in line %d; it was left out", cellsHold(l.invisible), l.hidden1.Row))
+	}
+	if r := l.grid.lost; r > 0 {
+		out = append(out, fmt.Sprintf("line %d holds U+FFFD, which stands for a character that was lost before", l.grid.lines.at(r-1)))
 	}
 	if s.loose > 0 {
 		out = append(out, fmt.Sprintf("line %d has a quote inside a quoted field that is not doubled; it was taken as a letter", s.loose))

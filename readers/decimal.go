@@ -64,7 +64,8 @@ func signsOf(s string) signUse {
 	return maybe
 }
 
-// pointSigns is signsOf for a plain number with a point or comma, by its counts.
+// plainSigns is signsOf for a plain number, by its counts: digits before the sign
+// and after it, and whether the first is a zero.
 func plainSigns(decimal byte, whole, decimals int, zero bool) signUse {
 	if decimals == 0 {
 		return noSign
@@ -109,4 +110,21 @@ func (e *evidence) decide(delimiter byte) signVerdict {
 		return signOpen
 	}
 	return signPoint
+}
+
+// numberUnderEither tells whether a text is a number, with a unit or without, under
+// a point or a comma as decimal sign, and what it says of the sign.
+func numberUnderEither(s string) (signUse, bool) {
+	if c := s[0]; c >= 'A' && c <= 'Z' || c >= 'a' && c <= 'z' {
+		return noSign, false
+	}
+	for _, decimal := range [...]byte{'.', ','} {
+		if w, ok := readNumber(s, decimal); ok && w.look == Wording {
+			return signsOf(s), true
+		}
+		if _, unit, ok := readMeasure(s, decimal); ok {
+			return signsOf(trimPadding(s[:len(s)-len(unit)])), true
+		}
+	}
+	return noSign, false
 }

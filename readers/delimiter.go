@@ -9,7 +9,7 @@ import (
 
 // chooseDialect decides how a file is written from its first part.
 func chooseDialect(src source, sv *survey, opt Options, limits Limits) (dialect, []string, error) {
-	d := dialect{encoding: sv.encoding, decimal: '.'}
+	d := dialect{decimal: '.'}
 	r, err := src.text(sv)
 	if err != nil {
 		return d, nil, err
@@ -149,23 +149,6 @@ func tally(sample []byte, delimiter byte, whole bool, limits Limits) fieldTally 
 		t.numbers /= float64(t.width)
 	}
 	return t
-}
-
-// numberUnderEither tells whether a text is a number with a point or with a comma
-// as decimal sign, and what it says of the sign.
-func numberUnderEither(s string) (signUse, bool) {
-	if c := s[0]; c >= 'A' && c <= 'Z' || c >= 'a' && c <= 'z' {
-		return noSign, false
-	}
-	for _, decimal := range [...]byte{'.', ','} {
-		if w, ok := readNumber(s, decimal); ok && w.look == Wording {
-			return signsOf(s), true
-		}
-		if _, _, ok := readMeasure(s, decimal); ok {
-			return noSign, true
-		}
-	}
-	return noSign, false
 }
 
 // sniffDelimiter chooses among the four: the one under which the most records have

@@ -12,7 +12,7 @@ type dictionary struct {
 	slots  []uint32 // code+1 by hash, 0 for free; length a power of two
 	at     []uint64 // place of each text: block, offset, length
 	kinds  []CellKind
-	values []wordValue // of texts that are numbers, by code
+	values []wordValue // of texts that tell of numbers, by code
 	block  []byte      // the block being filled
 	full   [][]byte
 	seed   maphash.Seed
@@ -114,4 +114,10 @@ func (d *dictionary) setValue(code uint32, v wordValue) {
 	d.values[code] = v
 }
 
-func (d *dictionary) value(code uint32) wordValue { return d.values[code] }
+// value gives what a text means as a number; zero when it is none.
+func (d *dictionary) value(code uint32) wordValue {
+	if int(code) < len(d.values) {
+		return d.values[code]
+	}
+	return wordValue{}
+}

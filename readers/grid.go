@@ -1,6 +1,7 @@
 package readers
 
 import (
+	"bytes"
 	"slices"
 	"sort"
 )
@@ -18,6 +19,7 @@ type grid struct {
 	records     int
 	lines       runs       // record -> line or row of the file
 	fields      runs       // record -> number of fields; text files only
+	lost        int        // 1 + the first record with U+FFFD in it
 	gaps        []int32    // records that follow a blank row
 	comments    []int32    // records of lines that start with #
 	signs       evidence   // of the decimal sign
@@ -80,21 +82,20 @@ func (g *grid) isComment(record int) bool {
 func (g *grid) word(s *store, record int, text []byte, form, marks uint8) {
 	code, slot, known := s.words.find(text)
 	if !known {
+		if g.lost == 0 && bytes.Contains(text, []byte("\ufffd")) {
+			g.lost = record + 1
+		}
 		kind, value := g.classify(string(text))
 		code = s.words.add(text, slot, kind)
-		if kind == Number || kind == declaredCode {
+		if value != (wordValue{}) {
 			s.words.setValue(code, value)
 		}
 	}
-	switch kind := s.words.kind(code); kind {
-	case Number, declaredCode:
-		v := s.words.value(code)
-		g.signs.add(v.signs, record)
+	kind, v := s.words.kind(code), s.words.value(code)
+	g.signs.add(v.signs, record)
+	if kind == Number || kind == declaredCode {
 		s.putNumber(record, uint8(kind)|markWord|marks, form|v.form, v.value, code)
-	case otherSignText:
-		g.signs.add(signsOf(s.words.text(code)), record)
-		s.putWord(record, uint8(kind)|marks&^markText, form, code)
-	default:
+	} else {
 		s.putWord(record, uint8(kind)|marks&^markText, form, code)
 	}
 }
@@ -146,6 +147,7 @@ func (g *grid) classify(text string) (CellKind, wordValue) {
 	if _, ok := readDate(text); ok {
 		return Date, v
 	}
+	v.signs, _ = numberUnderEither(text)
 	switch lookOf(text, g.decimal) {
 	case Measure:
 		return measureText, v

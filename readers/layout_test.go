@@ -340,6 +340,7 @@ func TestDecimalSign(t *testing.T) {
 		{"the majority reads the file, the other way", lines("s;x", "a;7.5", "b;8.5", "c;9,5"), ".", `7.5 8.5 "9,5"`},
 		{"commas between thousands where points decide", lines("s,x", "a,7.5", `b,"2,517"`, `c,"1,002,517.5"`), ".", "7.5 2517 1.0025175e+06"},
 		{"points are no evidence where a comma is", "s\tx\na\t1.042\nb\t2.517\nc\t7,5\n", ",", "1042 2517 7.5"},
+		{"numbers with a unit tell too", lines("s;x", "a;7,5%", "b;2,517%"), ",", "7.5'% 2.517'%"},
 		{"whole numbers need no sign", lines("s;x", "a;7", "b;8"), ".", "7 8"},
 		{"spaces between thousands", lines("s;x", "a;1 042,5", "b;7"), ",", "1042.5 7"},
 	} {

@@ -56,42 +56,20 @@ func cellsAre(n int) string {
 type markCount struct{ thousands, texts, results int }
 
 func (c *Column) markCounts() (m markCount) {
-	if !c.store.marked() {
+	if c.marked&(Thousands|TextNumber|Formula) == 0 {
 		return m
 	}
 	for i := range c.table.length {
-		at := c.table.at(i)
-		k := c.store.kind(at)
-		if c.store.form(at)&formThousands != 0 {
+		marks := c.Marks(i)
+		if marks&Thousands != 0 {
 			m.thousands++
 		}
-		if k&markText != 0 {
+		if marks&TextNumber != 0 {
 			m.texts++
 		}
-		if k&markResult != 0 && CellKind(k&kindMask) != Uncached {
+		if marks&Formula != 0 && c.CellKind(i) != Uncached {
 			m.results++
 		}
 	}
 	return m
-}
-
-// marked tells whether any cell of the column may have such a mark; most columns
-// have none and need no second look by record.
-func (s *store) marked() bool {
-	for _, p := range s.pieces {
-		if p == nil {
-			continue
-		}
-		for _, k := range p.kind {
-			if k&(markText|markResult) != 0 {
-				return true
-			}
-		}
-		for _, f := range p.form {
-			if f&formThousands != 0 {
-				return true
-			}
-		}
-	}
-	return false
 }

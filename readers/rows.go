@@ -84,14 +84,16 @@ func (b *body) markUnnamed(marks []uint8) {
 		}
 	}
 	for _, c := range b.labels {
-		blank := 0
+		labelled := 0
 		s := b.g.seek(c)
-		for r := b.first; r < b.end; r++ {
-			if marks[r]&(rowNumber|rowWord) == rowNumber && s.kind(r) == 0 {
-				blank++
+		s.kinds(func(first int, kinds []uint8) {
+			for r := max(b.first, first); r < min(b.end, first+len(kinds)); r++ {
+				if kinds[r-first] != 0 && marks[r]&(rowNumber|rowWord) == rowNumber {
+					labelled++
+				}
 			}
-		}
-		if 10*blank > rows {
+		})
+		if 10*(rows-labelled) > rows {
 			continue
 		}
 		b.must = append(b.must, c)

@@ -78,9 +78,6 @@ func (b *book) readSheet(s bookSheet, opt Options, limits Limits, area *box) (*g
 			return nil, err
 		}
 	}
-	if p.open != nil && !p.rooted {
-		return nil, p.broken("is empty")
-	}
 	if p.g.facts.filter == "" && len(g.facts.hiddenRows) > 0 {
 		g.facts.filter = s.filter
 	}

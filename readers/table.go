@@ -133,6 +133,7 @@ type Column struct {
 	store  *store
 	kind   Kind
 	counts [declaredCode + 1]int
+	marked Mark
 	labels func() labels
 }
 
@@ -187,7 +188,7 @@ func (c *Column) Cell(row int) Cell {
 	stored, form := s.kind(at), s.form(at)
 	kind := CellKind(stored & kindMask)
 	cell := Cell{
-		Kind: kind.public(), Number: math.NaN(), Decimals: -1,
+		Kind: kind.public(), Number: math.NaN(), Decimals: c.Decimals(row),
 		TextNumber: stored&markText != 0,
 		Formula:    stored&markResult != 0,
 		Filled:     stored&markFilled != 0,
@@ -205,10 +206,6 @@ func (c *Column) Cell(row int) Cell {
 		cell.Number = s.value(at)
 		if cell.Text == "" {
 			cell.Text = numberText(cell.Number, form, g.decimal)
-		}
-		cell.Decimals = decimalsOf(cell.Number, form, stored)
-		if c.table.Format == TextFile && form&decimalsMask == decimalsOpen {
-			cell.Decimals = decimalsIn(cell.Text, g.decimal)
 		}
 		if form&formUnit != 0 {
 			cell.Unit = c.Unit
@@ -412,13 +409,51 @@ func (c *Column) makeLabels() labels {
 // settle counts the kinds of a column's cells and decides its own.
 func (c *Column) settle() {
 	c.counts = [declaredCode + 1]int{}
-	for row := range c.table.length {
-		if !c.table.faulty(row) {
-			c.counts[c.store.kind(c.table.at(row))&kindMask]++
+	t := c.table
+	if t.index == nil && t.isFault == nil {
+		c.countWhole()
+	} else {
+		for row := range t.length {
+			at := t.at(row)
+			k := c.store.kind(at)
+			c.mark(k, c.store.form(at))
+			if !t.faulty(row) {
+				c.counts[k&kindMask]++
+			}
 		}
 	}
 	c.kind = kindOf(&c.counts)
 	c.labels = sync.OnceValue(c.makeLabels)
+}
+
+// countWhole counts a column whose records lie together, piece by piece.
+func (c *Column) countWhole() {
+	first, end := c.table.first, c.table.first+c.table.length
+	filled := 0
+	for i, p := range c.store.pieces {
+		if p == nil {
+			continue
+		}
+		from := i * pieceLen
+		for at := max(first, from); at < min(end, from+len(p.kind)); at++ {
+			k := p.kind[at-from]
+			form := uint8(0)
+			if at-from < len(p.form) {
+				form = p.form[at-from]
+			}
+			c.mark(k, form)
+			c.counts[k&kindMask]++
+			filled++
+		}
+	}
+	c.counts[Blank] += c.table.length - filled
+}
+
+// mark notes the marks of one cell of the column.
+func (c *Column) mark(stored, form uint8) {
+	if stored&^(kindMask|markWord) != 0 || form&^decimalsMask != 0 || stored&kindMask == uint8(declaredCode) {
+		c.marked |= marksOf(stored, form)
+	}
 }
 
 func kindOf(n *[declaredCode + 1]int) Kind {

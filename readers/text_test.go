@@ -181,6 +181,7 @@ func TestReadingIsTold(t *testing.T) {
 		{name: "no name", text: lines("a,,b", "x,1,3", "y,2,4"), encoding: "UTF-8", delimiter: ",", decimal: ".", note: "column B has no name"},
 		{name: "quote", text: lines("a,b", `"6" pot",1`, "y,2"), encoding: "UTF-8", delimiter: ",", decimal: ".", note: "line 2 has a quote inside a quoted field"},
 		{name: "long quote", text: "a,b\n\"" + strings.Repeat("x\n", 70) + "\",1\ny,2\n", encoding: "UTF-8", delimiter: ",", decimal: ".", note: "the quoted field that opens in line 2 is more than 64 lines long"},
+		{name: "lost", text: lines("a,b", "x\ufffd,1", "y,2"), encoding: "UTF-8", delimiter: ",", decimal: ".", note: "line 2 holds U+FFFD, which stands for a character that was lost before"},
 		{name: "units", text: lines("a,b", ",mm", "x,1", "y,2"), encoding: "UTF-8", delimiter: ",", decimal: ".", note: "row 2 holds units, no data"},
 	} {
 		t.Run(c.name, func(t *testing.T) {

@@ -8,6 +8,7 @@ import (
 
 	"gonum.org/v1/gonum/floats"
 
+	"footing/rules/model"
 	"footing/rules/numeric"
 	"footing/rules/remedy"
 	"footing/rules/wording"
@@ -137,14 +138,18 @@ const (
 	leastCover   = 0.90
 	normal95     = 1.959964
 	fanBisection = 40
+	// In large tables the fan is found for certain: three digits of its ratio will
+	// do for the words.
+	fanBisectionLarge = 12
 )
 
 // fanBreach is the smallest fan along the predictor, or its mirror image, under
 // which some nominal 95 % interval covers less than 90 %.
 func (p *Pass) fanBreach() Trouble {
 	var best fan
+	intervals := p.intervals()
 	for _, along := range p.fanDirections() {
-		f := p.smallestFan(along)
+		f := p.smallestFan(along, intervals)
 		if best.sd == nil || f.ratio < best.ratio || (f.ratio == best.ratio && f.coverage < best.coverage) {
 			best = f
 		}
@@ -190,7 +195,7 @@ func (p *Pass) fanDirections() [][]float64 {
 	return [][]float64{up, down}
 }
 
-func (p *Pass) smallestFan(along []float64) fan {
+func (p *Pass) smallestFan(along []float64, intervals []interval) fan {
 	at := func(ratio float64) fan {
 		f := fan{ratio: ratio, sd: make([]float64, len(along))}
 		ms := 0.0
@@ -199,7 +204,7 @@ func (p *Pass) smallestFan(along []float64) fan {
 			ms += f.sd[i] * f.sd[i]
 		}
 		floats.Scale(1/math.Sqrt(ms/float64(len(along))), f.sd)
-		f.coverage = p.worstCoverage(f.sd)
+		f.coverage = p.worstCoverage(intervals, f.sd)
 		return f
 	}
 	if f := at(leastFan); f.coverage < leastCover {
@@ -209,7 +214,11 @@ func (p *Pass) smallestFan(along []float64) fan {
 		return f
 	}
 	low, high := math.Log(leastFan), math.Log(greatestFan)
-	for range fanBisection {
+	steps := fanBisection
+	if len(along) > LargestSimulated {
+		steps = fanBisectionLarge
+	}
+	for range steps {
 		middle := (low + high) / 2
 		if at(math.Exp(middle)).coverage < leastCover {
 			high = middle
@@ -220,25 +229,22 @@ func (p *Pass) smallestFan(along []float64) fan {
 	return at(math.Exp(high))
 }
 
-// worstCoverage is the coverage of the nominal 95 % interval, over slopes and
-// pair differences, that the error SDs harm most: 2 Phi(1.96/r) - 1 with r the
-// true over the estimated standard error.
-func (p *Pass) worstCoverage(sd []float64) float64 {
-	worst := 1.0
-	consider := func(catcher []float64, rows []int, df float64) {
-		if df <= 0 {
-			return
+// interval is a nominal interval: of a slope or of a pair difference, with the
+// rows and degrees of freedom that its scatter is estimated from.
+type interval struct {
+	catcher []float64
+	squares float64 // of the catcher
+	rows    []int
+	df      float64
+}
+
+// intervals lists the intervals that a fan may harm.
+func (p *Pass) intervals() []interval {
+	var all []interval
+	add := func(c model.Contrast, rows []int, df float64) {
+		if df > 0 {
+			all = append(all, interval{catcher: c.Catcher, squares: floats.Dot(c.Catcher, c.Catcher), rows: rows, df: df})
 		}
-		var actual, squares, expected float64
-		for i, c := range catcher {
-			actual += c * c * sd[i] * sd[i]
-			squares += c * c
-		}
-		for _, i := range rows {
-			expected += sd[i] * sd[i] * (1 - p.Fit.Leverage[i])
-		}
-		r := math.Sqrt(actual / (squares * expected / df))
-		worst = min(worst, 2*numeric.NormalCDF(normal95/r)-1)
 	}
 	everyRow := p.usedRows()
 	terms := p.Fit.AnswerTerms()
@@ -247,21 +253,39 @@ func (p *Pass) worstCoverage(sd []float64) float64 {
 		if k < 0 {
 			continue
 		}
-		c := p.Fit.Term(k).Catcher
 		if rows := p.Design.Members(g); own {
 			if len(rows) >= 3 {
-				consider(c, rows, float64(len(rows)-2))
+				add(p.Fit.Term(k), rows, float64(len(rows)-2))
 			}
 			continue
 		}
-		consider(c, everyRow, float64(p.Fit.DF))
+		add(p.Fit.Term(k), everyRow, float64(p.Fit.DF))
 	}
 	for a, ka := range terms {
 		for _, kb := range terms[a+1:] {
 			if ka >= 0 && kb >= 0 {
-				consider(p.Fit.Difference(ka, kb).Catcher, everyRow, float64(p.Fit.DF))
+				add(p.Fit.Difference(ka, kb), everyRow, float64(p.Fit.DF))
 			}
 		}
+	}
+	return all
+}
+
+// worstCoverage is the coverage of the nominal 95 % interval that the error SDs
+// harm most: 2 Phi(1.96/r) - 1 with r the true over the estimated standard
+// error.
+func (p *Pass) worstCoverage(intervals []interval, sd []float64) float64 {
+	worst := 1.0
+	for _, v := range intervals {
+		var actual, expected float64
+		for i, c := range v.catcher {
+			actual += c * c * sd[i] * sd[i]
+		}
+		for _, i := range v.rows {
+			expected += sd[i] * sd[i] * (1 - p.Fit.Leverage[i])
+		}
+		r := math.Sqrt(actual / (v.squares * expected / v.df))
+		worst = min(worst, 2*numeric.NormalCDF(normal95/r)-1)
 	}
 	return worst
 }

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/rand/v2"
+	"slices"
 
 	"footing/rules/model"
 	"footing/rules/numeric"
@@ -51,7 +52,12 @@ func influenceChance(p *Pass) (*Chance, string) {
 		return nil, "no slope and no mean, or too few rows to leave one out"
 	}
 	reach := p.reach()
-	closed := func(t float64) float64 { return unionBound(p.Fit, reach, t) }
+	bounded := reach
+	rows := slices.Repeat([]float64{1}, len(reach))
+	if len(reach) > LargestSimulated {
+		bounded, rows = heaped(reach)
+	}
+	closed := func(t float64) float64 { return unionBound(p.Fit, bounded, rows, t) }
 	return &Chance{
 		Members: []Member{{
 			Test: Test{Name: "largest DFBETAS of a " + p.answerWord(), Value: best.value, P: closed(best.value)},
@@ -119,14 +125,36 @@ func (p *Pass) shares() [][]float64 {
 	return all
 }
 
-// unionBound is the chance that any row of a sound table reaches a DFBETAS of
-// t, bounded by the sum over the rows of the chance that its externally
-// studentized residual reaches t over the row's reach. It holds at every n.
-func unionBound(f *model.Fit, reach []float64, t float64) float64 {
-	total := 0.0
+// heaped rounds the rows' reach up to steps of a thousandth, so that a large
+// table needs a tail for each step and not for each row: the bound holds all the
+// same. What is below a twentieth of the largest is rounded up to that.
+func heaped(reach []float64) (steps, rows []float64) {
+	const step = 1e-3
+	largest := slices.Max(reach)
+	count := make([]float64, int(math.Log(20)/step)+2)
 	for _, a := range reach {
 		if a > 0 {
-			total += numeric.StudentTwoSided(t/a, float64(f.DF-1))
+			count[min(len(count)-1, int(math.Log(largest/a)/step))]++
+		}
+	}
+	for k, n := range count {
+		if n > 0 {
+			steps = append(steps, largest*math.Exp(-step*float64(k)))
+			rows = append(rows, n)
+		}
+	}
+	return steps, rows
+}
+
+// unionBound is the chance that any row of a sound table reaches a DFBETAS of
+// t, bounded by the sum over the rows of the chance that its externally
+// studentized residual reaches t over the row's reach; rows counts how many share
+// a reach. It holds at every n.
+func unionBound(f *model.Fit, reach, rows []float64, t float64) float64 {
+	total := 0.0
+	for k, a := range reach {
+		if a > 0 {
+			total += rows[k] * numeric.StudentTwoSided(t/a, float64(f.DF-1))
 		}
 	}
 	return min(1, total)

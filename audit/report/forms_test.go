@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"encoding/xml"
 	"fmt"
+	"html"
 	"io"
 	"regexp"
 	"strings"
@@ -34,6 +35,14 @@ var readBack = map[string]reader{
 	"sarif":     {said: decodedJSON, shown: func(s string) string { return sarifMessage(s).Text }},
 	"junit":     {said: decodedXML, shown: wording.Printable},
 	"statement": {said: plainly, shown: wording.Printable, onlyNames: true},
+	"html":      {said: taglessHTML, shown: wording.Printable},
+}
+
+var tag = regexp.MustCompile(`(?s)<style>.*?</style>|<[^>]*>`)
+
+// taglessHTML is what a page says between its tags.
+func taglessHTML(_ *testing.T, raw []byte) string {
+	return html.UnescapeString(tag.ReplaceAllString(string(raw), " "))
 }
 
 func plainly(_ *testing.T, raw []byte) string { return string(raw) }

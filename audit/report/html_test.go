@@ -269,7 +269,11 @@ func survey(n int) []byte {
 		if i == n/2 {
 			y += 30
 		}
-		fmt.Fprintf(&b, "%c,%.3f,%.3f,%d\n", 'a'+i%3, x, y, i+1)
+		site := 'a' + i%3
+		if i == 1500 {
+			site = 'A' // a label in two spellings, in a row that is not far from any other
+		}
+		fmt.Fprintf(&b, "%c,%.3f,%.3f,%d\n", site, x, y, i+1)
 	}
 	return b.Bytes()
 }
@@ -300,6 +304,20 @@ func TestHTMLSize(t *testing.T) {
 	}
 	if !strings.Contains(said(large), fmt.Sprintf("%d of the %d rows are drawn", len(r.Drawing.Points), rows)) {
 		t.Error("the page does not say that rows are left out")
+	}
+	points := map[int]bool{}
+	for _, p := range r.Drawing.Points {
+		points[p.Row] = true
+	}
+	for _, f := range r.Findings {
+		for _, w := range f.Where {
+			if f.Rule == "label-variants" && !points[*w.Row] {
+				t.Errorf("row %d, which label-variants names, is not drawn", *w.Row)
+			}
+		}
+		if f.Rule == "label-variants" && len(f.Where) == 0 {
+			t.Error("label-variants names no row")
+		}
 	}
 	wild := fmt.Sprintf("row %d", rows/2+2)
 	for _, f := range figure.All(r) {
