@@ -26,6 +26,7 @@ var mayImport = map[string][]string{
 	"rules/wording":   {},
 	"readers":         {},
 	"testdata/demo":   {},
+	"testdata/broken": {},
 }
 
 // TestImportPlan holds every file, tests too, to the plan. A package that is
