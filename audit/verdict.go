@@ -46,6 +46,9 @@ func (e *examination) standingOf(q rules.Question) standing {
 }
 
 func (e *examination) weigh(s *standing, x *examined, q rules.Question) {
+	if e.goesWithTheTable(x) {
+		return
+	}
 	say := e.speaker()
 	for _, limit := range x.outcome.Limits {
 		if limit.Of != nil && *limit.Of == q {
@@ -82,6 +85,17 @@ func (e *examination) weigh(s *standing, x *examined, q rules.Question) {
 	if x.rule.AlwaysTry && (x.state == Pass || x.state == Thin) {
 		e.weighAlways(s, x, q)
 	}
+}
+
+// goesWithTheTable reports whether a finding of the model follows from one of the
+// table and takes no answer away by itself: once the table is mended it is gone,
+// and what its own remedies did to the unmended rows says nothing.
+func (e *examination) goesWithTheTable(x *examined) bool {
+	if x.root == "" || x.rule.Family == rules.OfTable || len(x.outcome.Denies) > 0 {
+		return false
+	}
+	root := e.named(x.root)
+	return root != nil && root.rule.Family == rules.OfTable
 }
 
 // weighAlways holds an answer against a remedy whose figures are the ones to
