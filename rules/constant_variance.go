@@ -141,6 +141,9 @@ const (
 	// In large tables the fan is found for certain: three digits of its ratio will
 	// do for the words.
 	fanBisectionLarge = 12
+	// Above this many rows the least fan of the search is found for certain, and a
+	// wider one need not be looked for.
+	largestFanSearch = 20000
 )
 
 // fanBreach is the smallest fan along the predictor, or its mirror image, under
@@ -207,7 +210,7 @@ func (p *Pass) smallestFan(along []float64, intervals []interval) fan {
 		f.coverage = p.worstCoverage(intervals, f.sd)
 		return f
 	}
-	if f := at(leastFan); f.coverage < leastCover {
+	if f := at(leastFan); f.coverage < leastCover || len(along) > largestFanSearch {
 		return f
 	}
 	if f := at(greatestFan); !(f.coverage < leastCover) {

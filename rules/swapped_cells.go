@@ -96,8 +96,10 @@ const fewestPasted = 5
 func (p *Pass) pastedLists(o *Outcome) {
 	var lists []*readers.Column
 	for _, col := range p.Table.Columns {
-		names, _ := col.Levels()
-		if col.Kind() == readers.TextColumn && len(names) >= fewestPasted && 2*len(names) >= col.Len() {
+		if col.Kind() != readers.TextColumn {
+			continue // the labels of a million numbers cost more than they tell
+		}
+		if names, _ := col.Levels(); len(names) >= fewestPasted && 2*len(names) >= col.Len() {
 			lists = append(lists, col)
 		}
 	}
